@@ -1,0 +1,178 @@
+//! What a spoken utterance can mean.
+//!
+//! Promises: a number that can be read in several ways is [`Meaning::Ambiguous`], never a guess;
+//! what was not understood is an outcome ([`Meaning::Nothing`]), not an error.
+//! It leaves out how the words were found (see `phrase`) and what the session does with them.
+
+use crate::domain::{
+    place::Place,
+    reading::{Reading, Unit},
+    test::TestKind,
+};
+
+/// Answers to the question that stands on the screen.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub enum Reply {
+    /// Yes, keep it ("affirm", "affirmative", "correct", ...).
+    Affirm,
+    /// No, drop it ("negative", "wrong", ...).
+    Negative,
+    /// The n-th of a pick list, from 1 ("first", "second", "third").
+    Pick(u8),
+    /// Keep an out-of-range reading as found ("keep as found").
+    KeepAsFound,
+    /// Measure again ("measure again").
+    MeasureAgain,
+    /// A reminder or step is done ("done", "ready", "acknowledged").
+    Done,
+}
+
+/// Commands that work at every prompt.
+#[derive(Debug, Clone, PartialEq, Eq, Hash)]
+#[allow(missing_docs)] // the names are the commands
+pub enum Control {
+    SayAgain,
+    /// Drop what is being entered.
+    Disregard,
+    /// Replace the last value kept; the new reading follows, or is asked for.
+    Correction(Option<Box<Meaning>>),
+    Standby,
+    Resume,
+    Back,
+    Next,
+    /// Leave this test with a reason.
+    Skip,
+    Help,
+    /// What is still open.
+    ListOpen,
+    /// Which temporary links and works are in.
+    ListLinks,
+    /// Why this range is expected.
+    Why,
+    /// A temporary link went in / came out.
+    LinkIn,
+    LinkOut,
+    /// Say the value one digit at a time.
+    DigitByDigit,
+    Stop,
+    /// Take up this test now.
+    Test(TestKind),
+    /// A reason code, from 1, where one is asked for.
+    Reason(u8),
+    /// A ticked outcome for tests without a figure (polarity, phase sequence, function).
+    Confirmed,
+    NotConfirmed,
+    /// Begin a free note (typed later at the van; the clip is kept).
+    Note,
+}
+
+/// The meaning of one utterance.
+#[derive(Debug, Clone, PartialEq, Eq, Hash)]
+pub enum Meaning {
+    /// A reading.
+    Reading(Reading),
+    /// A board, circuit, line or point called by name.
+    Place(Place),
+    /// An answer.
+    Reply(Reply),
+    /// A command.
+    Control(Control),
+    /// Several meanings, the likelier first; the tool asks which.
+    Ambiguous(Vec<Meaning>),
+    /// Not understood; the reason is a whole phrase for the screen.
+    Nothing(String),
+}
+
+/// One hypothesis of the recogniser with its meaning.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Hypothesis {
+    /// Words in lower case, separated by single spaces.
+    pub words: String,
+    /// What they mean.
+    pub meaning: Meaning,
+    /// How much less likely than the best (log likelihood, 0 for the best).
+    pub margin: f64,
+}
+
+/// What was heard of one utterance: the best hypothesis first.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Heard {
+    /// Best first; empty when nothing was understood.
+    pub hypotheses: Vec<Hypothesis>,
+    /// The decision, after the margin was looked at.
+    pub meaning: Meaning,
+    /// Name of the kept clip, if one was kept.
+    pub clip: Option<String>,
+}
+
+impl Heard {
+    /// The words of the best hypothesis, or nothing.
+    #[must_use]
+    pub fn words(&self) -> &str {
+        self.hypotheses.first().map_or("", |h| h.words.as_str())
+    }
+}
+
+/// What may be said now: the names of the grammar contexts under `grammars/`.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord)]
+pub enum Context {
+    /// Continuity, loop and electrode readings (ohms).
+    Ohms,
+    /// Insulation readings (megohms).
+    Insulation,
+    /// Times, currents, voltages of the live tests.
+    Live,
+    /// Ticked outcomes (polarity, phase sequence, function).
+    Tick,
+    /// Affirm or negative after a read-back.
+    Confirm,
+    /// Keep as found or measure again, then a reason.
+    Question,
+    /// Pick list.
+    Pick,
+    /// Safety reminders and gates: done, negative.
+    Gate,
+    /// Anything: all of the above (the default of `hear`).
+    All,
+}
+
+impl Context {
+    /// Every context.
+    pub const EVERY: [Context; 9] = [
+        Context::Ohms,
+        Context::Insulation,
+        Context::Live,
+        Context::Tick,
+        Context::Confirm,
+        Context::Question,
+        Context::Pick,
+        Context::Gate,
+        Context::All,
+    ];
+
+    /// The context's name: its grammar file is `grammars/NAME.abnf`.
+    #[must_use]
+    pub fn name(self) -> &'static str {
+        match self {
+            Context::Ohms => "ohms",
+            Context::Insulation => "insulation",
+            Context::Live => "live",
+            Context::Tick => "tick",
+            Context::Confirm => "confirm",
+            Context::Question => "question",
+            Context::Pick => "pick",
+            Context::Gate => "gate",
+            Context::All => "all",
+        }
+    }
+
+    /// The unit a figure has when none was said in this context.
+    #[must_use]
+    pub fn unit(self) -> Option<Unit> {
+        match self {
+            Context::Ohms => Some(Unit::Ohm),
+            Context::Insulation => Some(Unit::Megohm),
+            _ => None,
+        }
+    }
+}
