@@ -64,6 +64,15 @@ impl Kept {
         self.values.get(target).map(|(_, entry)| *entry)
     }
 
+    /// The target whose value stands in that entry.
+    #[must_use]
+    pub fn target_of(&self, entry: EntryNo) -> Option<&Target> {
+        self.values
+            .iter()
+            .find(|(_, (_, held))| *held == entry)
+            .map(|(target, _)| target)
+    }
+
     /// All readings of one kind of test on one circuit, in order of their points.
     pub fn series<'a>(
         &'a self,

@@ -4,8 +4,10 @@
 
 pub mod expect;
 pub mod kept;
+pub mod moment;
 pub mod place;
 pub mod plan;
 pub mod reading;
 pub mod record;
+pub mod standing;
 pub mod test;

@@ -294,6 +294,17 @@ pub enum Record {
         /// Who.
         by: String,
     },
+    /// After a join: of the values several handhelds kept for one target, this one counts.
+    Decided {
+        /// The target measured several times.
+        target: Target,
+        /// The entry whose value counts.
+        takes: EntryNo,
+        /// Why.
+        reason: String,
+        /// Who decided.
+        by: String,
+    },
     /// Something outside happened: microphone lost or found, clock changed, tail set aside.
     Incident {
         /// What, in a sentence.
