@@ -10,4 +10,7 @@ pub mod plan;
 pub mod reading;
 pub mod record;
 pub mod standing;
+pub mod reminders;
+pub mod sequence;
 pub mod test;
+pub mod words;

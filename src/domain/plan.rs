@@ -64,6 +64,8 @@ pub struct Rules {
     pub cold_loop: ColdLoopRule,
     /// Highest earth electrode resistance with an RCD: 50/IΔn or a stable 200 Ω.
     pub electrode: ElectrodeRule,
+    /// Insulation to earth conductor by conductor; otherwise the lives are joined.
+    pub insulation_separately: bool,
     /// Whether the test at five times the rated residual current is wanted.
     pub rcd_five_times: bool,
     /// Whether the test at half the rated residual current is wanted.

@@ -1,0 +1,1 @@
+//! One broken file for every mistake the loader knows, each provoking its message.
