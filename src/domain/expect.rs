@@ -13,8 +13,9 @@ use super::reading::Unit;
 pub struct Source {
     /// The document, table or law with its edition: "IEC 60228:2004 table 1".
     pub text: String,
-    /// False where a value could not be checked against the standard itself; shown wherever the
-    /// value is printed.
+    /// False where copies of the source disagree, or only memory speaks for the value: shown
+    /// wherever the value is printed. True is no claim that a bought standard was read; it means
+    /// that several published copies agree, or that the value is arithmetic.
     pub checked: bool,
 }
 
@@ -112,4 +113,24 @@ pub struct Assessment {
     pub verdict: Verdict,
     /// Ranked, most likely first; empty when nothing is wrong.
     pub findings: Vec<Finding>,
+}
+
+impl Assessment {
+    /// Whether the tester must be asked before the reading is kept: it lies outside its range, or
+    /// the series it belongs to hints at a fault although it lies inside.
+    #[must_use]
+    pub fn questioned(&self) -> bool {
+        self.verdict.questioned() || !self.findings.is_empty()
+    }
+}
+
+impl std::fmt::Display for Source {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        f.write_str(&self.text)?;
+        if self.checked {
+            Ok(())
+        } else {
+            f.write_str(" [not checked against the standard]")
+        }
+    }
 }
