@@ -7,7 +7,7 @@
 use crate::domain::{
     place::Place,
     reading::{Reading, Unit},
-    test::TestKind,
+    test::{Stage, TestKind},
 };
 
 /// Answers to the question that stands on the screen.
@@ -57,6 +57,8 @@ pub enum Control {
     Stop,
     /// Take up this test now.
     Test(TestKind),
+    /// Go to this stage ("insulation", "ring", "continuity"), at the test that is next in it.
+    Stage(Stage),
     /// A reason code, from 1, where one is asked for.
     Reason(u8),
     /// A ticked outcome for tests without a figure (polarity, phase sequence, function).
@@ -64,6 +66,74 @@ pub enum Control {
     NotConfirmed,
     /// Begin a free note (typed later at the van; the clip is kept).
     Note,
+}
+
+impl Reply {
+    /// The reply as a word in JSON: `affirm`, `keep-as-found`, ...
+    #[must_use]
+    pub fn word(self) -> &'static str {
+        match self {
+            Reply::Affirm => "affirm",
+            Reply::Negative => "negative",
+            Reply::Pick(_) => "pick",
+            Reply::KeepAsFound => "keep-as-found",
+            Reply::MeasureAgain => "measure-again",
+            Reply::Done => "done",
+        }
+    }
+}
+
+impl Control {
+    /// The commands that have no parts.
+    pub const PLAIN: [Control; 18] = [
+        Control::SayAgain,
+        Control::Disregard,
+        Control::Standby,
+        Control::Resume,
+        Control::Back,
+        Control::Next,
+        Control::Skip,
+        Control::Help,
+        Control::ListOpen,
+        Control::ListLinks,
+        Control::Why,
+        Control::LinkIn,
+        Control::LinkOut,
+        Control::DigitByDigit,
+        Control::Stop,
+        Control::Confirmed,
+        Control::NotConfirmed,
+        Control::Note,
+    ];
+
+    /// The command as a word in JSON: `say-again`, `link-out`, ...
+    #[must_use]
+    pub fn word(&self) -> &'static str {
+        match self {
+            Control::SayAgain => "say-again",
+            Control::Disregard => "disregard",
+            Control::Correction(_) => "correction",
+            Control::Standby => "standby",
+            Control::Resume => "resume",
+            Control::Back => "back",
+            Control::Next => "next",
+            Control::Skip => "skip",
+            Control::Help => "help",
+            Control::ListOpen => "list-open",
+            Control::ListLinks => "list-links",
+            Control::Why => "why",
+            Control::LinkIn => "link-in",
+            Control::LinkOut => "link-out",
+            Control::DigitByDigit => "digit-by-digit",
+            Control::Stop => "stop",
+            Control::Test(_) => "test",
+            Control::Stage(_) => "stage",
+            Control::Reason(_) => "reason",
+            Control::Confirmed => "confirmed",
+            Control::NotConfirmed => "not-confirmed",
+            Control::Note => "note",
+        }
+    }
 }
 
 /// The meaning of one utterance.
