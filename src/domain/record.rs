@@ -311,3 +311,31 @@ pub enum Record {
         what: String,
     },
 }
+
+impl Record {
+    /// The same record with every entry number it names put through `to`.
+    #[must_use]
+    pub fn with_entries(mut self, to: impl Fn(EntryNo) -> EntryNo) -> Self {
+        match &mut self {
+            Record::Reading(reading) => {
+                if let Some(no) = &mut reading.corrects {
+                    *no = to(*no);
+                }
+            }
+            Record::Repeat { because: no, .. }
+            | Record::Amended { corrects: no, .. }
+            | Record::Decided { takes: no, .. } => *no = to(*no),
+            Record::SessionOpened { .. }
+            | Record::SessionClosed { .. }
+            | Record::Acknowledged { .. }
+            | Record::ProvedDead { .. }
+            | Record::Skipped { .. }
+            | Record::WorkIn { .. }
+            | Record::WorkOut { .. }
+            | Record::StageClosed { .. }
+            | Record::Note { .. }
+            | Record::Incident { .. } => {}
+        }
+        self
+    }
+}

@@ -206,7 +206,7 @@ impl Standing {
                 all.by = side.by;
             }
         }
-        for (target, mut several) in values {
+        for (target, several) in values {
             let same = several.windows(2).all(|pair| pair[0].1 == pair[1].1);
             // A test one handheld still wants done again stays open, whoever else has measured it:
             // which came first, the failure or the other reading, is for a person to say.
