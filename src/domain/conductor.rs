@@ -94,6 +94,13 @@ pub fn class_number(class: Class) -> u8 {
     }
 }
 
+/// The usual class of fixed wiring: solid to 4 mm², stranded above (common practice, no source).
+/// The table holds the same resistance for both up to 150 mm².
+#[must_use]
+pub fn usual_class(mm2: f64) -> Class {
+    if mm2 <= 4.0 { Class::One } else { Class::Two }
+}
+
 fn column(row: &(f64, f64, f64, f64, f64), material: Material, class: Class) -> f64 {
     match (material, class) {
         (Material::Copper, Class::One) => row.1,
