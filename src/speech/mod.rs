@@ -8,6 +8,7 @@
 //! under `grammars/` are the only place that says what may be said: `net` compiles them for
 //! understanding, `word_graph` for recognisers, `help` for the screen.
 
+pub mod decide;
 pub mod grammar;
 pub mod guess;
 pub mod help;
@@ -17,11 +18,13 @@ pub mod meaning;
 pub mod net;
 pub mod parse;
 pub mod phrases;
+pub mod say;
 pub mod sense;
 pub mod spelling;
 pub mod tag;
 pub mod word_graph;
 
+pub use decide::{Margins, decide};
 pub use meaning::{Context, Control, Heard, Hypothesis, Meaning, Reply};
 pub use phrases::Phrases;
 
