@@ -157,12 +157,13 @@ fn silently(net: &Net, tails: &mut Tails, front: Front) -> Front {
     let mut reached = Front::new();
     let mut todo: Vec<((usize, usize), f32)> = front.into_iter().collect();
     // A fixed order, so that tag strings are numbered the same way on every run.
-    todo.sort_by_key(|entry| entry.0);
+    todo.sort_by_key(|entry| std::cmp::Reverse(entry.0));
     while let Some((key, cost)) = todo.pop() {
         if !lower(&mut reached, key, cost) {
             continue;
         }
-        for arc in &net.states[key.0] {
+        // The stack is last in, first out: reversed, so that the file's order is followed.
+        for arc in net.states[key.0].iter().rev() {
             let tail = match &arc.label {
                 Label::Word(_) => continue,
                 Label::Silent => key.1,

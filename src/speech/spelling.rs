@@ -28,7 +28,7 @@ pub(super) fn digit_word(c: char) -> Option<&'static str> {
 #[must_use]
 pub fn words(text: &str) -> Vec<String> {
     let mut raw = Vec::new();
-    for token in text.to_lowercase().replace('’', "'").split_whitespace() {
+    for token in text.replace('’', "'").split_whitespace() {
         split(token, &mut raw);
     }
     board_letters(respelled(raw))
@@ -43,8 +43,47 @@ pub fn tidied(text: &str) -> String {
         .join(" ")
 }
 
+/// Units written as symbols after a figure (SI; case matters: M is mega, m is milli).
+const SYMBOLS: [(&str, &str); 16] = [
+    ("MΩ", "megohms"),
+    ("mΩ", "milliohms"),
+    ("kΩ", "kilohms"),
+    ("GΩ", "gigohms"),
+    ("Ω", "ohms"),
+    ("kA", "kiloamps"),
+    ("mA", "milliamps"),
+    ("A", "amps"),
+    ("mV", "millivolts"),
+    ("V", "volts"),
+    ("ms", "milliseconds"),
+    ("s", "seconds"),
+    ("Hz", "hertz"),
+    ("%", "percent"),
+    ("m", "metres"),
+    ("°C", "degrees celsius"),
+];
+
+/// A figure written together with its unit, or a unit symbol by itself that is no letter.
+fn figure_and_unit(token: &str) -> Option<(&str, &'static str)> {
+    SYMBOLS.iter().find_map(|(symbol, words)| {
+        let figure = token.strip_suffix(symbol)?;
+        let lone = figure.is_empty() && symbol.chars().any(|c| !c.is_ascii_alphabetic());
+        let after_figure = figure.ends_with(|c: char| c.is_ascii_digit());
+        (lone || after_figure).then_some((figure, *words))
+    })
+}
+
 /// One token between spaces: hyphens, figures, signs.
 fn split(token: &str, out: &mut Vec<String>) {
+    // The ohm sign and the capital omega look alike.
+    let token = token.replace('\u{2126}', "Ω");
+    if let Some((figure, unit)) = figure_and_unit(&token) {
+        split(figure, out);
+        out.extend(unit.split_whitespace().map(Into::into));
+        return;
+    }
+    let token = token.to_lowercase();
+    let token = token.as_str();
     if token == super::phrases::UNKNOWN || token == "x-ray" {
         out.push(token.into());
         return;
@@ -58,6 +97,26 @@ fn split(token: &str, out: &mut Vec<String>) {
         }
     };
     let mixed = token.chars().any(|c| c.is_ascii_digit());
+    // 26ms, 0.58ohms: the letters that end it are one word.
+    let figure = token.trim_end_matches(|c: char| c.is_ascii_alphabetic());
+    if mixed
+        && figure.len() < token.len()
+        && !figure.contains(|c: char| c.is_ascii_alphabetic())
+        && figure.ends_with(|c: char| c.is_ascii_digit())
+    {
+        split(figure, out);
+        out.push(token[figure.len()..].into());
+        return;
+    }
+    // C7 is circuit seven.
+    if let Some(way) = token.strip_prefix('c')
+        && !way.is_empty()
+        && way.chars().all(|c| c.is_ascii_digit())
+    {
+        out.push("circuit".into());
+        split(way, out);
+        return;
+    }
     for c in token.chars() {
         match c {
             '-' | '/' => finish(&mut word, out),
@@ -140,6 +199,9 @@ fn table() -> &'static Table {
     })
 }
 
+/// Short words that follow a board and are no letters.
+const NOT_LETTERS: [&str; 6] = ["one", "two", "six", "ten", "way", "and"];
+
 /// Letters typed after "board" are said in the ICAO alphabet; "d b" is said as it is.
 fn board_letters(mut words: Vec<String>) -> Vec<String> {
     let mut at = 0;
@@ -154,16 +216,24 @@ fn board_letters(mut words: Vec<String>) -> Vec<String> {
                 at += 2;
                 continue;
             }
-            let mut chars = words[at].chars();
-            match (chars.next(), chars.next()) {
-                (Some(c @ 'a'..='z'), None) => {
-                    words[at] = LETTERS[c as usize - 'a' as usize].into();
-                }
-                _ if DIGITS.contains(&words[at].as_str())
-                    || LETTERS.contains(&words[at].as_str()) => {}
-                _ => break,
+            let word = words[at].clone();
+            let letters = (1..=3).contains(&word.len())
+                && !NOT_LETTERS.contains(&word.as_str())
+                && word.chars().all(|c| c.is_ascii_lowercase());
+            if letters {
+                let said = word
+                    .chars()
+                    .map(|c| LETTERS[c as usize - 'a' as usize].to_owned());
+                words.splice(at..=at, said);
+                at += word.len();
+            } else if word == "dash"
+                || DIGITS.contains(&word.as_str())
+                || LETTERS.contains(&word.as_str())
+            {
+                at += 1;
+            } else {
+                break;
             }
-            at += 1;
         }
     }
     words
