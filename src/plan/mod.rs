@@ -14,6 +14,7 @@ mod head;
 mod notices;
 mod place;
 mod suggest;
+pub mod write;
 
 use std::path::Path;
 
