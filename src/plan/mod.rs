@@ -11,6 +11,7 @@ mod circuit;
 mod error;
 mod fields;
 mod head;
+pub mod interview;
 mod notices;
 mod place;
 mod suggest;

@@ -1,0 +1,118 @@
+//! Reads single answers: numbers, yes and no, words of closed lists, lists.
+//!
+//! Promises: an error is one clause that says what would be right. It leaves out the questions.
+
+use crate::domain::words::Worded;
+
+use super::super::{cable::SIZES_MM2, fields::either, suggest};
+
+/// The word for "nothing" and for the end of a list.
+pub(super) const NONE: &str = "none";
+/// Ends a list of questions.
+pub(super) const DONE: &str = "done";
+
+/// Any text.
+pub(super) fn text(answer: &str) -> Result<String, String> {
+    Ok(answer.to_string())
+}
+
+/// Any text, or empty for `none`.
+pub(super) fn text_or_none(answer: &str) -> Result<String, String> {
+    Ok(if is_none(answer) {
+        String::new()
+    } else {
+        answer.to_string()
+    })
+}
+
+/// Whether the answer says "nothing".
+pub(super) fn is_none(answer: &str) -> bool {
+    answer.eq_ignore_ascii_case(NONE) || answer == "-"
+}
+
+/// Whether the answer ends a list.
+pub(super) fn is_done(answer: &str) -> bool {
+    answer.eq_ignore_ascii_case(DONE) || is_none(answer)
+}
+
+/// Yes or no.
+pub(super) fn yes_no(answer: &str) -> Result<bool, String> {
+    match answer.to_lowercase().as_str() {
+        "y" | "yes" => Ok(true),
+        "n" | "no" => Ok(false),
+        _ => Err("answer yes or no".into()),
+    }
+}
+
+/// A number between two bounds, with a point or a comma; a unit after it is not taken.
+pub(super) fn number(low: f64, high: f64) -> impl Fn(&str) -> Result<f64, String> {
+    move |answer| {
+        let plain = answer.replace(',', ".");
+        let figure = plain
+            .chars()
+            .all(|c| c.is_ascii_digit() || matches!(c, '.' | '-'));
+        match plain.parse::<f64>() {
+            Ok(value) if figure && (low..=high).contains(&value) => Ok(value),
+            Ok(_) if figure => Err(format!("it must lie between {low} and {high}")),
+            _ => Err(format!(
+                "`{answer}` is not a number; write it without unit, such as 2.5"
+            )),
+        }
+    }
+}
+
+/// As [`number`], or nothing.
+pub(super) fn number_or_none(low: f64, high: f64) -> impl Fn(&str) -> Result<Option<f64>, String> {
+    move |answer| {
+        if is_none(answer) {
+            Ok(None)
+        } else {
+            number(low, high)(answer).map(Some)
+        }
+    }
+}
+
+/// A cross-section of IEC 60228, copper.
+pub(super) fn size(answer: &str) -> Result<f64, String> {
+    let mm2 = number(0.0, 1000.0)(answer)?;
+    if SIZES_MM2.contains(&mm2) {
+        Ok(mm2)
+    } else {
+        let sizes: Vec<String> = SIZES_MM2.iter().map(f64::to_string).collect();
+        Err(format!(
+            "{mm2} mm² is no size of IEC 60228; the sizes are {}",
+            sizes.join(", ")
+        ))
+    }
+}
+
+/// A word of a closed list.
+pub(super) fn word<T: Worded>(answer: &str) -> Result<T, String> {
+    let words = words::<T>();
+    T::from_word(answer).ok_or_else(|| {
+        let right = format!("use {}", either(&words));
+        format!(
+            "`{answer}` is no {}; {}",
+            T::WHAT,
+            suggest::with_suggestion(answer, &words, &right)
+        )
+    })
+}
+
+/// The words of a closed list.
+pub(super) fn words<T: Worded>() -> Vec<&'static str> {
+    T::WORDS.iter().map(|(word, _)| *word).collect()
+}
+
+/// Texts with commas between; none of them empty.
+pub(super) fn texts(answer: &str) -> Result<Vec<String>, String> {
+    if is_none(answer) {
+        return Ok(Vec::new());
+    }
+    let items: Vec<String> = answer.split(',').map(|t| t.trim().to_string()).collect();
+    if items.iter().any(String::is_empty) {
+        Err("there is an empty name between commas".into())
+    } else {
+        Ok(items)
+    }
+}
