@@ -4,6 +4,7 @@
 //! (copper, solid up to 4 mm² and stranded above, neutral as line, 70 °C thermoplastic, length
 //! scaled from the drawing). It leaves out resistances: those are the physics'.
 
+use crate::domain::conductor as table;
 use crate::domain::plan::{
     Cable, CircuitKind, Class, Conductor, Insulation, Length, LengthBasis, Material, Run,
 };
@@ -12,12 +13,6 @@ use super::{
     error::Mistakes,
     fields::{At, Fields},
 };
-
-/// Cross-sections of IEC 60228, 0.5 to 300 mm².
-pub(super) const SIZES_MM2: [f64; 19] = [
-    0.5, 0.75, 1.0, 1.5, 2.5, 4.0, 6.0, 10.0, 16.0, 25.0, 35.0, 50.0, 70.0, 95.0, 120.0, 150.0,
-    185.0, 240.0, 300.0,
-];
 
 /// Longest length taken without doubt, in metres: ten kilometres is a slip of units.
 const LONGEST_M: f64 = 10_000.0;
@@ -113,9 +108,14 @@ pub(super) fn usual_class(mm2: f64) -> Class {
     if mm2 <= 4.0 { Class::One } else { Class::Two }
 }
 
-/// Whether the table has that size; aluminium begins at 10 mm².
-pub(super) fn checked_size(mm2: f64, material: Material) -> bool {
-    SIZES_MM2.contains(&mm2) && (material == Material::Copper || mm2 >= 10.0)
+/// The sizes of IEC 60228 held for a material.
+pub(super) fn sizes(material: Material) -> Vec<f64> {
+    table::sizes(material, Class::Two)
+}
+
+/// Whether the table has that size.
+fn checked_size(mm2: f64, material: Material) -> bool {
+    sizes(material).contains(&mm2)
 }
 
 fn of(material: Material) -> &'static str {
@@ -127,13 +127,9 @@ fn of(material: Material) -> &'static str {
 
 /// The sizes on either side, for the message.
 fn near_sizes(mm2: f64, material: Material) -> String {
-    let below = SIZES_MM2
-        .iter()
-        .rev()
-        .find(|s| **s < mm2 && checked_size(**s, material));
-    let above = SIZES_MM2
-        .iter()
-        .find(|s| **s > mm2 && checked_size(**s, material));
+    let sizes = sizes(material);
+    let below = sizes.iter().rev().find(|s| **s < mm2);
+    let above = sizes.iter().find(|s| **s > mm2);
     match (below, above) {
         (Some(below), Some(above)) => format!("the nearest are {below} and {above}"),
         (Some(only), None) => format!("the largest is {only}"),

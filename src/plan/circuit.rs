@@ -292,6 +292,14 @@ fn point(
         return point;
     }
     let name = format!("point {}", point.no);
+    if !matches!(item.get_ref(), DeValue::Table(_)) {
+        mistakes.add(
+            &item.span(),
+            format!("{name} is {}", described(item.get_ref())),
+            "write its name in quotes, or { name = \"porch\", at-m = 12 }",
+        );
+        return point;
+    }
     let Some(mut f) = inner(item, "points", &name, mistakes) else {
         return point;
     };

@@ -8,7 +8,7 @@ use toml::de::DeValue;
 
 use crate::domain::{
     plan::{Bond, Earthing, Instrument, InstrumentRange, Job, Rules, Supply},
-    reading::Unit,
+    range::{usual_continuity, usual_insulation},
     words::Worded,
 };
 
@@ -86,10 +86,11 @@ fn heading(document: &mut Fields<'_>, mistakes: &mut Mistakes<'_>) -> Job {
     job.address = head.text_or_empty("address", mistakes);
     job.client = head.text_or_empty("client", mistakes);
     let given = head.has("testers");
+    let before = mistakes.count();
     let testers = head.texts("testers", mistakes);
     if !given {
         head.missing("testers", "who tests: testers = [\"A. Tester\"]", mistakes);
-    } else if testers.is_empty() {
+    } else if testers.is_empty() && mistakes.count() == before {
         mistakes.add(
             head.span(),
             "`testers` names nobody",
@@ -294,27 +295,14 @@ fn instruments(document: &mut Fields<'_>, mistakes: &mut Mistakes<'_>) -> Vec<In
     list
 }
 
-/// What an ordinary installation tester shows (common practice, no source): continuity in 0.01 Ω
-/// steps to 99.99 Ω, 3 % + 2 digits; insulation in 0.01 MΩ steps to 999 MΩ, 5 % + 3 digits.
+/// The stand-in for a file that names no instrument: the ranges of a usual one.
 pub(super) fn usual_instrument() -> Instrument {
     Instrument {
         description: "instrument not named".into(),
         serial: String::new(),
         calibrated: String::new(),
-        continuity: InstrumentRange {
-            unit: Unit::Ohm,
-            resolution: Decimal::new(1, 2),
-            ceiling: Decimal::new(9999, 2),
-            accuracy_percent: 3.0,
-            accuracy_digits: 2.0,
-        },
-        insulation: InstrumentRange {
-            unit: Unit::Megohm,
-            resolution: Decimal::new(1, 2),
-            ceiling: Decimal::from(999),
-            accuracy_percent: 5.0,
-            accuracy_digits: 3.0,
-        },
+        continuity: usual_continuity(),
+        insulation: usual_insulation(),
     }
 }
 

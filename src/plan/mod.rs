@@ -24,6 +24,9 @@ pub use notices::Notice;
 
 use crate::domain::plan::Job;
 
+/// A complete job file with comments: every key there is, in an invented scenario.
+pub const EXAMPLE: &str = include_str!("example.toml");
+
 /// A job and what should be said about its file although nothing in it is wrong.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Loaded {

@@ -6,6 +6,20 @@
 /// The word of `among` nearest to `word`, when it is near enough to be a slip.
 pub(super) fn nearest<'a>(word: &str, among: &[&'a str]) -> Option<&'a str> {
     let word = word.trim().to_lowercase();
+    // The same letters with other hyphens and spaces are the same word: TNCS is TN-C-S, not TN-S.
+    let letters = |text: &str| -> String {
+        text.chars()
+            .filter(|c| c.is_alphanumeric())
+            .collect::<String>()
+            .to_lowercase()
+    };
+    let plain = letters(&word);
+    if let Some(same) = among
+        .iter()
+        .find(|c| !plain.is_empty() && letters(c) == plain)
+    {
+        return Some(same);
+    }
     among
         .iter()
         .map(|candidate| (slips(&word, &candidate.to_lowercase()), *candidate))
@@ -66,6 +80,7 @@ mod tests {
         check("Ring", Some("ring"));
         check("lihgting", Some("lighting"));
         check("distribtion", Some("distribution"));
+        assert_eq!(nearest("TNCS", &["TN-S", "TN-C-S"]), Some("TN-C-S"));
         check("cooker", None);
         check("", None);
     }

@@ -12,12 +12,13 @@ mod voltage;
 mod works;
 
 pub use again::influenced_by;
-pub use voltage::{TestVoltage, test_voltage};
+pub use voltage::{TestVoltage, test_voltage, voltage_class};
 pub use works::{MAIN_EARTH, works_in_the_way, works_needed};
 
 use super::{
+    layout::{self, Spot},
     place::{BoardId, PointNo},
-    plan::{Board, Circuit, CircuitKind, Earthing, Job, Point},
+    plan::{Board, Circuit, CircuitKind, Earthing, Job},
     test::{Between, Stage, Target, TestKind},
 };
 
@@ -79,45 +80,32 @@ pub fn stages(job: &Job) -> Vec<Stage> {
 }
 
 /// The point where the loop impedance of a circuit is highest: its end, the middle of a ring, or
-/// the longest spur. Points without a place in the plan are taken as evenly spaced.
+/// the longest spur. Points without a place in the plan lie where `layout` puts them.
 #[must_use]
 pub fn furthest_point(circuit: &Circuit) -> PointNo {
-    let reach = |point: &Point| -> f64 {
-        let at = place_on_run(circuit, point);
-        let spur = point.spur_m.unwrap_or(0.0);
+    let whole = circuit.length.m;
+    let reach = |spot: &Spot| -> f64 {
         if circuit.kind == CircuitKind::Ring {
             // The loop seen from x is x(l - x)/l of it; a spur adds in full.
-            at * (circuit.length.m - at) / circuit.length.m + spur
+            spot.at_m * (whole - spot.at_m) / whole + spot.spur_m
         } else {
-            at + spur
+            spot.path_m()
         }
     };
-    circuit
-        .points
-        .iter()
-        .fold(None, |best: Option<(PointNo, f64)>, point| {
-            let here = reach(point);
-            match best {
-                // Ties go to the later point of a radial (its end) and the earlier of a ring.
-                Some((_, far)) if circuit.kind == CircuitKind::Ring && far >= here => best,
-                Some((_, far)) if far > here => best,
-                _ => Some((point.no, here)),
-            }
-        })
-        .map_or(PointNo(1), |(no, _)| no)
-}
-
-/// Metres along the run at which a point stands, or its even share of the run.
-fn place_on_run(circuit: &Circuit, point: &Point) -> f64 {
-    point.at_m.unwrap_or_else(|| {
-        let count = circuit.points.len() as f64;
-        let nth = f64::from(point.no.0);
-        if circuit.kind == CircuitKind::Ring {
-            circuit.length.m * nth / (count + 1.0)
-        } else {
-            circuit.length.m * nth / count
+    let mut best: Option<(PointNo, f64)> = None;
+    for spot in layout::spots(circuit) {
+        let here = reach(&spot);
+        // Ties go to the later point of a radial (its end) and the earlier of a ring.
+        let further = match best {
+            None => true,
+            Some((_, far)) if circuit.kind == CircuitKind::Ring => here > far,
+            Some((_, far)) => here >= far,
+        };
+        if further {
+            best = Some((spot.no, here));
         }
-    })
+    }
+    best.map_or(PointNo(1), |(no, _)| no)
 }
 
 /// Whether the circuit works at extra-low voltage (SELV or PELV).

@@ -5,6 +5,7 @@
 
 use crate::domain::{
     expect::Source,
+    insulation::{self, Voltage},
     plan::{Circuit, Job},
     test::{Target, TestKind},
 };
@@ -22,36 +23,33 @@ pub struct TestVoltage {
 
 /// The voltage of a test; `None` for tests that are no insulation test.
 ///
-/// 250 V for SELV and PELV, 500 V up to a nominal 500 V, 1000 V above; 250 V where electronics
-/// stay connected. The separation of an extra-low-voltage circuit is tested at its own 250 V.
+/// The separation of an extra-low-voltage circuit is tested at its own 250 V.
 #[must_use]
 pub fn test_voltage(job: &Job, target: &Target) -> Option<TestVoltage> {
     if !matches!(target.test, TestKind::Insulation(_) | TestKind::Separation) {
         return None;
     }
     let circuit = job.circuit(target.board.as_ref()?, target.circuit?)?;
-    let table = "IEC 60364-6:2016 table 6.1, BS 7671:2018 table 64";
-    let (volts, text) = if extra_low(circuit.kind) {
-        (250, format!("{table}: SELV, PELV"))
-    } else if circuit.electronics {
-        (
-            250,
-            "BS 7671:2018 regulation 643.3.3: electronics stay connected".into(),
-        )
-    } else if nominal_v(job, circuit) <= 500.0 {
-        (500, format!("{table}: up to 500 V"))
-    } else {
-        (1000, format!("{table}: above 500 V"))
-    };
+    let rule = insulation::rule(voltage_class(job, circuit));
     Some(TestVoltage {
-        volts,
-        source: Source {
-            text,
-            // The three voltages were read in copies of the tables; the table numbers and the
-            // regulation number are from memory.
-            checked: false,
-        },
+        volts: rule.test_v,
+        source: rule.source,
     })
+}
+
+/// What decides the test voltage of a circuit. Surge protection is taken out, so it decides
+/// nothing; electronics that stay in do.
+#[must_use]
+pub fn voltage_class(job: &Job, circuit: &Circuit) -> Voltage {
+    if extra_low(circuit.kind) {
+        Voltage::ExtraLow
+    } else if circuit.electronics {
+        Voltage::LowWithElectronics
+    } else if nominal_v(job, circuit) > 500.0 {
+        Voltage::Above500
+    } else {
+        Voltage::Low
+    }
 }
 
 /// Voltage between the live conductors of a circuit.

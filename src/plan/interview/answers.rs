@@ -2,9 +2,9 @@
 //!
 //! Promises: an error is one clause that says what would be right. It leaves out the questions.
 
-use crate::domain::words::Worded;
+use crate::domain::{plan::Material, words::Worded};
 
-use super::super::{cable::SIZES_MM2, fields::either, suggest};
+use super::super::{cable::sizes, fields::either, suggest};
 
 /// The word for "nothing" and for the end of a list.
 pub(super) const NONE: &str = "none";
@@ -75,10 +75,11 @@ pub(super) fn number_or_none(low: f64, high: f64) -> impl Fn(&str) -> Result<Opt
 /// A cross-section of IEC 60228, copper.
 pub(super) fn size(answer: &str) -> Result<f64, String> {
     let mm2 = number(0.0, 1000.0)(answer)?;
-    if SIZES_MM2.contains(&mm2) {
+    let held = sizes(Material::Copper);
+    if held.contains(&mm2) {
         Ok(mm2)
     } else {
-        let sizes: Vec<String> = SIZES_MM2.iter().map(f64::to_string).collect();
+        let sizes: Vec<String> = held.iter().map(f64::to_string).collect();
         Err(format!(
             "{mm2} mm² is no size of IEC 60228; the sizes are {}",
             sizes.join(", ")
