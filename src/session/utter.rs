@@ -1,0 +1,307 @@
+//! What is said aloud at each prompt, and the words used on the screen for places and tests.
+//!
+//! Short and plain, the question last: a tester on a step-ladder hears the value first. It leaves
+//! out how a text becomes sound.
+
+use crate::{
+    domain::{
+        expect::{Expected, Verdict},
+        place::Place,
+        reading::{Bound, Reading},
+        record::Work,
+        test::Target,
+    },
+    speech::meaning::{Context, Control},
+};
+
+use super::{
+    prompt::{Candidate, DeadStep, Entry, Prompt},
+    state::State,
+};
+
+/// What the tester acknowledges after an insulation test.
+pub(super) const DISCHARGED: &str =
+    "Probes held on until discharged; no voltage left (below 50 V) before anybody touches it.";
+
+/// The keys, for the help page; six lines a page, 38 columns at most.
+pub(super) const HELP: [&str; 24] = [
+    "ENTER yes, done   - no, back off",
+    "* menu   / say again   + next",
+    "Figure: digits and point, ENTER",
+    "  + first: greater than  >299",
+    "  - first: less than     <0.01",
+    "  / first: open; // over-range",
+    "  - later: rubs out",
+    "At a read-back a digit starts anew.",
+    "* then 1 call a circuit (7  4.2  7+3)",
+    "* then 2 call a test",
+    "* then 3 what is open",
+    "* then 4 links and works in",
+    "* then 5 how to connect, why the range",
+    "* then 6 correct the last value",
+    "* then 7 leave this test out",
+    "* then 8 standby   * 9 end the session",
+    "* then + next   * - one step back",
+    "* then . note   * ENTER listen once",
+    "Say: affirm, negative, say again,",
+    "  correction, disregard, digit by digit",
+    "  circuit one two, board alpha, next,",
+    "  back, skip, list open, list links,",
+    "  why, standby, resume, stop, help",
+    "Letters do the same: y n o l w s b c t",
+];
+
+/// The menu, for the screen.
+pub(super) const MENU: [&str; 6] = [
+    "1 call circuit     2 call test",
+    "3 what is open     4 links in",
+    "5 how and why      6 correct last",
+    "7 leave out        8 standby",
+    "9 end session      0 help",
+    "+ next   - back   / say again   . note",
+];
+
+/// What may be said now.
+pub(super) fn context_of(prompt: &Prompt) -> Context {
+    use crate::domain::reading::Unit;
+    match prompt {
+        Prompt::Gate(_) | Prompt::Fit(_) | Prompt::TakeOut(_) | Prompt::Hold(_) => Context::Gate,
+        Prompt::Dead(dead) => match dead.step {
+            DeadStep::Method => Context::Pick,
+            DeadStep::Number => Context::All,
+            _ => Context::Gate,
+        },
+        Prompt::Ask(ask) if ask.by_digit => Context::All,
+        Prompt::Ask(ask) => match ask.target.test.unit() {
+            None => Context::Tick,
+            Some(Unit::Ohm) => Context::Ohms,
+            Some(Unit::Megohm) => Context::Insulation,
+            Some(_) => Context::Live,
+        },
+        Prompt::Confirm(_) | Prompt::StopAsk | Prompt::Trouble(_) => Context::Confirm,
+        Prompt::Question(_) => Context::Question,
+        Prompt::List(_) => Context::Pick,
+        Prompt::Page(_) | Prompt::Menu | Prompt::Call(_) | Prompt::Finish => Context::All,
+        Prompt::Standby => Context::Gate,
+    }
+}
+
+impl State {
+    /// What may be said now.
+    #[must_use]
+    pub fn context(&self) -> Context {
+        match self.top() {
+            // A list of reasons takes reason codes as well.
+            Prompt::List(list)
+                if list.items.iter().any(|(_, c)| {
+                    matches!(
+                        c,
+                        super::prompt::Choice::Keep(..) | super::prompt::Choice::Skip(_)
+                    )
+                }) =>
+            {
+                Context::Question
+            }
+            top => context_of(top),
+        }
+    }
+}
+
+/// What is said when the prompt on top comes up.
+pub(super) fn prompt(state: &State) -> String {
+    match state.top() {
+        Prompt::Gate(gate) => {
+            let text = gate.pages.get(gate.page).map(|p| p.join(" "));
+            format!("{}. {}", gate.stage.title(), text.unwrap_or_default())
+        }
+        Prompt::Dead(dead) => dead_question(dead.step, dead.pairs()),
+        Prompt::Fit(work) => format!("Fit: {}. Done?", work_text(work)),
+        Prompt::TakeOut(work) => format!("Take out: {}. Out?", work_text(work)),
+        Prompt::Hold(_) => "Hold the probes on until discharged. Discharged?".into(),
+        Prompt::Ask(ask) => {
+            let range = range_text(&ask.expected);
+            format!("{}. {range}", target_text(&ask.target))
+        }
+        Prompt::Confirm(c) => read_back(c),
+        Prompt::Question(c) => {
+            let finding = c.assessment.findings.first().map(|f| f.text.clone());
+            format!(
+                "{}. {} Keep as found, or measure again?",
+                verdict_text(c.assessment.verdict),
+                finding.unwrap_or_default()
+            )
+        }
+        Prompt::List(list) => {
+            let lines: Vec<String> = list.shown().map(|(n, (t, _))| format!("{n}: {t}.")).collect();
+            format!("{} {}", list.title, lines.join(" "))
+        }
+        Prompt::Standby => "Standby.".into(),
+        Prompt::Trouble(_) => "Not kept. Try again?".into(),
+        Prompt::StopAsk => "End the session?".into(),
+        Prompt::Finish => "Nothing is left to do.".into(),
+        Prompt::Page(_) | Prompt::Menu | Prompt::Call(_) => String::new(),
+    }
+}
+
+/// The question of a step of proving dead.
+pub(super) fn dead_question(step: DeadStep, pairs: &str) -> String {
+    match step {
+        DeadStep::Method => "Indicator proved on: 1 unit, 2 live source?".into(),
+        DeadStep::Number => "Number of the indicator?".into(),
+        DeadStep::Before => "Indicator proved just now?".into(),
+        DeadStep::Dead => format!("No voltage: {pairs}?"),
+        DeadStep::After => "Indicator proved again after?".into(),
+    }
+}
+
+/// The read-back: value digit by digit, unit, place, verdict, question.
+pub(super) fn read_back(candidate: &Candidate) -> String {
+    let value = match &candidate.entry {
+        Entry::Reading(reading) => spoken(reading),
+        tick @ Entry::Tick(_) => tick.to_string(),
+    };
+    let off = match candidate.assessment.verdict {
+        Verdict::InRange | Verdict::Unknown => String::new(),
+        verdict => format!(" {}.", verdict_text(verdict)),
+    };
+    format!("{value}. {}.{off} Affirm?", target_text(&candidate.target))
+}
+
+/// A reading digit by digit.
+pub(super) fn spoken(reading: &Reading) -> String {
+    let unit = reading.unit().map_or("", |u| u.word());
+    let figure = reading.value().map(|v| draft(&v.to_string()));
+    let figure = figure.unwrap_or_default();
+    let text = match reading.bound() {
+        Bound::Open => return "open circuit".into(),
+        Bound::OverRange => return "over range".into(),
+        Bound::Above => format!("greater than {figure} {unit}"),
+        Bound::Below => format!("less than {figure} {unit}"),
+        Bound::Exact => format!("{figure} {unit}"),
+    };
+    text.trim_end().into()
+}
+
+/// Half-typed digits, one word each.
+pub(super) fn draft(text: &str) -> String {
+    let word = |c: char| match c {
+        '0' => "zero",
+        '1' => "one",
+        '2' => "two",
+        '3' => "three",
+        '4' => "four",
+        '5' => "five",
+        '6' => "six",
+        '7' => "seven",
+        '8' => "eight",
+        '9' => "nine",
+        '.' => "decimal",
+        '>' => "greater than",
+        '<' => "less than",
+        _ => "",
+    };
+    let words: Vec<&str> = text.chars().map(word).filter(|w| !w.is_empty()).collect();
+    words.join(" ")
+}
+
+/// How a reading lies, in words that hold without colour.
+pub(super) fn verdict_text(verdict: Verdict) -> &'static str {
+    match verdict {
+        Verdict::InRange => "within the range",
+        Verdict::Below => "BELOW the range",
+        Verdict::Above => "ABOVE the range",
+        Verdict::Open => "OPEN, a value was expected",
+        Verdict::NotOpen => "NOT OPEN, open was expected",
+        Verdict::BeyondLimit => "BEYOND THE LIMIT",
+        Verdict::Unknown => "no range to compare with",
+    }
+}
+
+/// The range on one line.
+pub(super) fn range_text(expected: &Expected) -> String {
+    let unit = expected.unit;
+    if expected.open {
+        return "Expect: open".into();
+    }
+    let limit = expected.limit.as_ref().map(|l| {
+        let sign = if l.minimum { "min" } else { "max" };
+        format!("{sign} {} {unit}", l.value)
+    });
+    let range = match (expected.low, expected.high) {
+        (Some(low), Some(high)) => Some(format!("{low} to {high} {unit}")),
+        (Some(low), None) => Some(format!("from {low} {unit}")),
+        (None, Some(high)) => Some(format!("up to {high} {unit}")),
+        (None, None) => None,
+    };
+    match (range, limit) {
+        (Some(range), Some(limit)) => format!("Expect: {range} ({limit})"),
+        (Some(only), None) | (None, Some(only)) => format!("Expect: {only}"),
+        (None, None) => match &expected.unknown {
+            Some(why) => format!("No range: {why}"),
+            None => "No range".into(),
+        },
+    }
+}
+
+/// A test and its place, short.
+pub(super) fn target_text(target: &Target) -> String {
+    let mut text = String::new();
+    if let (Some(board), Some(circuit)) = (&target.board, target.circuit) {
+        text = format!("{board}/{circuit} ");
+    } else if let Some(board) = &target.board {
+        text = format!("{board} ");
+    }
+    text.push_str(&target.test.title());
+    if let Some(name) = &target.name {
+        text.push_str(&format!(" {name}"));
+    }
+    if let Some(point) = target.point {
+        text.push_str(&format!(" pt {point}"));
+    }
+    text
+}
+
+/// A temporary work and its place.
+pub(super) fn work_text(work: &Work) -> String {
+    let mut text = work.kind.words().to_owned();
+    if let Some(name) = &work.name {
+        text.push_str(&format!(", {name}"));
+    }
+    match (&work.board, work.circuit) {
+        (Some(board), Some(circuit)) => text.push_str(&format!(", {board}/{circuit}")),
+        (Some(board), None) => text.push_str(&format!(", {board}")),
+        _ => {}
+    }
+    text
+}
+
+/// A place as called.
+pub(super) fn place_text(place: &Place) -> String {
+    let mut parts = Vec::new();
+    if let Some(name) = &place.name {
+        parts.push(name.clone());
+    }
+    if let Some(board) = &place.board {
+        parts.push(format!("board {board}"));
+    }
+    if let Some(circuit) = place.circuit {
+        parts.push(format!("circuit {circuit}"));
+    }
+    if let Some(point) = place.point {
+        parts.push(format!("point {point}"));
+    }
+    parts.join(", ")
+}
+
+/// A command as a word or two.
+pub(super) fn control_text(control: &Control) -> String {
+    match control {
+        Control::Test(test) => test.title(),
+        Control::Reason(n) => format!("reason {n}"),
+        Control::Correction(Some(inner)) => {
+            format!("correction {}", super::entry::meaning_text(inner))
+        }
+        Control::Correction(None) => "correction".into(),
+        plain => format!("{plain:?}").to_lowercase(),
+    }
+}
