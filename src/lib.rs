@@ -6,6 +6,7 @@
 //! see everything.
 //! `domain`, `speech` and `session` are pure: no file, clock, environment, thread or printing.
 
+pub mod app;
 pub mod commands;
 pub mod domain;
 pub mod journal;

@@ -1,17 +1,280 @@
 //! `handsfull field`: work a job: next test, expected range, reading by voice or keypad
 
+use std::{
+    cell::Cell,
+    io::{self, BufReader, IsTerminal, Write},
+    path::{Path, PathBuf},
+    rc::Rc,
+};
+
 use clap::Args as ClapArgs;
 
 use super::failure::{Failure, Kind};
+use crate::{
+    app::{
+        self, Edges, Events, Show, Silent, Voice,
+        ledger::{JournalLedger, wall_clock},
+        settings,
+    },
+    domain::{place::Place, plan::Job},
+    journal::{Journal, JournalError},
+    plan,
+    session::{Event, Settings, Setup, State, Tone},
+    speech::{
+        Phrases,
+        meaning::{Context, Heard, Hypothesis},
+    },
+    terminal::{
+        keyboard::{Keyboard, Raw, Signals},
+        keymap::Keymap,
+        lines::Lines,
+        plain::Plain,
+        screen::Screen,
+    },
+};
 
-/// work a job: next test, expected range, reading by voice or keypad
+/// Columns of the transcript on pipes and dumb terminals.
+const COLUMNS: usize = 40;
+
+/// Work a job: next test, expected range, reading by voice or keypad.
+///
+/// Everything affirmed is on disk at once; a session that broke off goes on at the same prompt.
+/// Without a terminal (a pipe) lines of keys are read and a plain transcript is printed.
 #[derive(Debug, ClapArgs)]
-pub struct Args {}
+pub struct Args {
+    /// The job file
+    pub job: PathBuf,
+    /// Who tests; the first tester of the job when left out
+    #[arg(long, value_name = "NAME")]
+    pub tester: Option<String>,
+    /// Do not listen and do not look for a voice
+    #[arg(long)]
+    pub keypad_only: bool,
+    /// No sound out: tones and read-back on the screen only
+    #[arg(long)]
+    pub text_only: bool,
+    /// Listen to one utterance at a time, opened by a key
+    #[arg(long)]
+    pub hold_to_talk: bool,
+}
 
 /// Runs the command.
 ///
 /// # Errors
 /// A [`Failure`] with its exit code.
-pub fn run(_args: &Args) -> Result<(), Failure> {
-    Err(Failure::new(Kind::Usage, "`field` is being built"))
+pub fn run(args: &Args) -> Result<(), Failure> {
+    let job = plan::load(&args.job).map_err(|e| Failure::new(Kind::Input, e))?;
+    let (mut settings, keymap) = settings::load().map_err(|e| {
+        Failure::new(Kind::Input, e).hint("mend the line, or move the file away for the defaults")
+    })?;
+    settings.text_only |= args.text_only;
+    settings.hold_to_talk |= args.hold_to_talk;
+    let tester = match &args.tester {
+        Some(name) if name.trim().is_empty() => {
+            return Err(Failure::new(Kind::Usage, "--tester: the name is empty"));
+        }
+        Some(name) => name.trim().to_owned(),
+        None => job.testers.first().cloned().unwrap_or_default(),
+    };
+    let signals = Signals::take()
+        .map_err(|e| Failure::new(Kind::Device, format!("signals cannot be handled: {e}")))?;
+    let session = Session::open(&args.job, job, &tester, settings)?;
+    eprintln!("keypad only: no voice is used");
+    let end = session.work(keymap, signals)?;
+    let open = end.standing().works_in.len();
+    if open > 0 {
+        eprintln!("still in: {open} temporary works; `handsfull review` lists them");
+    }
+    Ok(())
+}
+
+/// A job with its open log.
+struct Session {
+    setup: Setup,
+    standing: crate::domain::standing::Standing,
+    ledger: JournalLedger,
+    phrases: Phrases,
+}
+
+impl Session {
+    fn open(path: &Path, job: Job, tester: &str, settings: Settings) -> Result<Self, Failure> {
+        let now = wall_clock();
+        let (journal, recovery) =
+            Journal::open(path, &job.reference, now).map_err(|e| journal_failure(&e))?;
+        for incident in &recovery.incidents {
+            eprintln!("{incident}");
+        }
+        let log = journal.entries().map_err(|e| journal_failure(&e))?;
+        let names: Vec<(String, Place)> = job
+            .place_names
+            .iter()
+            .map(|name| {
+                let place = Place {
+                    board: name.board.clone(),
+                    circuit: name.circuit,
+                    ..Place::default()
+                };
+                (name.name.clone(), place)
+            })
+            .collect();
+        let phrases = Phrases::with_places(&names).map_err(|e| Failure::new(Kind::Input, e))?;
+        let mut setup = Setup::new(job, tester, settings);
+        setup.away = app::left_long(&log.entries, now);
+        setup.resume_at = app::breaks_off_at(&log.entries);
+        Ok(Self {
+            setup,
+            standing: recovery.standing,
+            ledger: JournalLedger::new(journal),
+            phrases,
+        })
+    }
+
+    fn work(mut self, keymap: Keymap, signals: Signals) -> Result<State, Failure> {
+        let dumb = std::env::var_os("TERM").is_none_or(|term| term == "dumb" || term.is_empty());
+        let terminal = io::stdin().is_terminal() && io::stdout().is_terminal() && !dumb;
+        let context = Rc::new(Cell::new(Context::All));
+        let mut voice = Listening {
+            context: Rc::clone(&context),
+            inner: Silent,
+        };
+        if terminal {
+            let _raw = Raw::enter().map_err(|e| {
+                Failure::new(Kind::Device, format!("the terminal cannot be used: {e}"))
+                    .hint("try again with lines of keys: TERM=dumb handsfull field ...")
+            })?;
+            let plain = std::env::var_os("NO_COLOR").is_some_and(|v| !v.is_empty());
+            let mut screen = OnScreen {
+                screen: Screen::new(io::stdout(), plain),
+                redraw: Rc::new(Cell::new(false)),
+            };
+            let mut keyboard = AtKeyboard {
+                keyboard: Keyboard::new(keymap, signals, None),
+                redraw: Rc::clone(&screen.redraw),
+            };
+            Ok(app::run(
+                self.setup,
+                self.standing,
+                &mut Edges {
+                    events: &mut keyboard,
+                    show: &mut screen,
+                    ledger: &mut self.ledger,
+                    voice: &mut voice,
+                },
+            ))
+        } else {
+            let echo = !io::stdin().is_terminal();
+            let phrases = self.phrases;
+            let understand = Box::new(move |words: &str| {
+                let meaning = phrases.understand(context.get(), words);
+                Event::Heard(Heard {
+                    hypotheses: vec![Hypothesis {
+                        words: words.into(),
+                        meaning: meaning.clone(),
+                        margin: 0.0,
+                    }],
+                    meaning,
+                    clip: None,
+                })
+            });
+            let stdin = BufReader::new(io::stdin());
+            let mut lines = ByLines(Lines::new(stdin, keymap, signals, None, understand));
+            let mut plain = AsText(Plain::new(io::stdout(), COLUMNS, echo));
+            Ok(app::run(
+                self.setup,
+                self.standing,
+                &mut Edges {
+                    events: &mut lines,
+                    show: &mut plain,
+                    ledger: &mut self.ledger,
+                    voice: &mut voice,
+                },
+            ))
+        }
+    }
+}
+
+fn journal_failure(error: &JournalError) -> Failure {
+    let kind = match error {
+        JournalError::Busy { .. } => Kind::Busy,
+        JournalError::OtherJob { .. } | JournalError::NotALog { .. } => Kind::Input,
+        _ => Kind::Log,
+    };
+    Failure::new(kind, error)
+}
+
+/// Remembers what may be said, for words that come as text.
+struct Listening<V> {
+    context: Rc<Cell<Context>>,
+    inner: V,
+}
+
+impl<V: Voice> Voice for Listening<V> {
+    fn say(&mut self, text: &str) {
+        self.inner.say(text);
+    }
+    fn tone(&mut self, tone: Tone) {
+        self.inner.tone(tone);
+    }
+    fn listen(&mut self, context: Context) {
+        self.context.set(context);
+        self.inner.listen(context);
+    }
+    fn pause(&mut self, pause: bool) {
+        self.inner.pause(pause);
+    }
+    fn talk(&mut self) {
+        self.inner.talk();
+    }
+}
+
+struct OnScreen<W: Write> {
+    screen: Screen<W>,
+    redraw: Rc<Cell<bool>>,
+}
+
+impl<W: Write> Show for OnScreen<W> {
+    fn event(&mut self, _event: &Event) {}
+
+    fn state(&mut self, state: &State, _event: &Event) {
+        if self.redraw.take() {
+            self.screen.forget();
+        }
+        // A terminal that went away ends the session by its signal, not here.
+        let _ = self.screen.show(state);
+    }
+}
+
+struct AtKeyboard {
+    keyboard: Keyboard,
+    redraw: Rc<Cell<bool>>,
+}
+
+impl Events for AtKeyboard {
+    fn next(&mut self) -> Option<Event> {
+        let event = self.keyboard.next_event();
+        if self.keyboard.take_redraw() {
+            self.redraw.set(true);
+        }
+        event
+    }
+}
+
+struct ByLines(Lines);
+
+impl Events for ByLines {
+    fn next(&mut self) -> Option<Event> {
+        self.0.next_event()
+    }
+}
+
+struct AsText<W: Write>(Plain<W>);
+
+impl<W: Write> Show for AsText<W> {
+    fn event(&mut self, event: &Event) {
+        self.0.event(event);
+    }
+
+    fn state(&mut self, state: &State, event: &Event) {
+        self.0.state(state, event);
+    }
 }

@@ -95,7 +95,9 @@ impl State {
                     return self.refuse("A link or work is still in. See the list of links.", out);
                 }
                 let closing = gate.board.as_ref().filter(|_| gate.stage == Stage::CloseUp);
-                let closing = closing.map(|b| self.closing_circuits(b)).unwrap_or_default();
+                let closing = closing
+                    .map(|b| self.closing_circuits(b))
+                    .unwrap_or_default();
                 self.queue(Record::Acknowledged {
                     stage: gate.stage,
                     board: gate.board,
@@ -134,7 +136,9 @@ impl State {
                 out,
             ),
             Prompt::Confirm(candidate) => self.affirmed(*candidate, how, out),
-            Prompt::Question(_) => self.refuse("Say or pick: keep as found, or measure again.", out),
+            Prompt::Question(_) => {
+                self.refuse("Say or pick: keep as found, or measure again.", out)
+            }
             Prompt::Ask(_) => self.command(Control::SayAgain, how, out),
             Prompt::List(_) | Prompt::Page(_) => self.command(Control::Next, how, out),
             Prompt::Menu => self.pop(out),
@@ -222,22 +226,24 @@ impl State {
             Err(why) => return self.missed(&why, out),
         };
         // Two values on two ways at once: neither is lost, the tester says which.
-        if let Some(Prompt::Confirm(other)) =
-            self.stack.iter().find(|p| matches!(p, Prompt::Confirm(_)))
+        let standing = self.stack.iter().find_map(|p| match p {
+            Prompt::Confirm(other) => Some(other.clone()),
+            _ => None,
+        });
+        if let Some(other) = standing
+            && other.entered != candidate.entered
+            && other.entry != candidate.entry
         {
-            if other.entered != candidate.entered && other.entry != candidate.entry {
-                let other = other.clone();
-                let line = |c: &Candidate| match c.entered {
-                    Entered::Voice => format!("{} (heard)", c.entry),
-                    Entered::Keypad => format!("{} (typed)", c.entry),
-                };
-                self.pop_all();
-                let items = vec![
-                    (line(&other), Choice::Candidate(other)),
-                    (line(&candidate), Choice::Candidate(Box::new(candidate))),
-                ];
-                return self.list("Two values came. Which one?", items, out);
-            }
+            let line = |c: &Candidate| match c.entered {
+                Entered::Voice => format!("{} (heard)", c.entry),
+                Entered::Keypad => format!("{} (typed)", c.entry),
+            };
+            self.pop_all();
+            let items = vec![
+                (line(&other), Choice::Candidate(other)),
+                (line(&candidate), Choice::Candidate(Box::new(candidate))),
+            ];
+            return self.list("Two values came. Which one?", items, out);
         }
         self.read_back(candidate, out);
     }
@@ -400,6 +406,7 @@ fn leads_away(act: &Act) -> bool {
                 | Control::LinkOut
                 | Control::Note
                 | Control::Test(_)
+                | Control::Stage(_)
         ),
         _ => false,
     }

@@ -77,6 +77,7 @@ impl State {
             }
             // These come as acts of their own; here only when picked out of a list.
             Control::Test(test) => self.take_up(test, out),
+            Control::Stage(stage) => self.take_up_stage(stage, out),
             Control::Reason(_) | Control::Confirmed | Control::NotConfirmed => {
                 self.refuse("Not here.", out);
             }
@@ -235,7 +236,9 @@ impl State {
                 let work = work.clone();
                 self.stays_in(&work, out);
             }
-            Some(Prompt::Dead(_) | Prompt::Hold(_)) => self.refuse("This cannot be passed over.", out),
+            Some(Prompt::Dead(_) | Prompt::Hold(_)) => {
+                self.refuse("This cannot be passed over.", out)
+            }
             _ => self.refuse("Nothing comes next here.", out),
         }
     }
@@ -269,8 +272,13 @@ impl State {
     }
 
     fn link_in(&mut self, out: &mut Vec<Effect>) {
-        let needed = self.wanted().map(|t| trade::works_needed(self.job(), &t)).unwrap_or_default();
-        let first = needed.into_iter().find(|w| !self.standing.works_in.contains(w));
+        let needed = self
+            .wanted()
+            .map(|t| trade::works_needed(self.job(), &t))
+            .unwrap_or_default();
+        let first = needed
+            .into_iter()
+            .find(|w| !self.standing.works_in.contains(w));
         match (first, &self.here.board) {
             (Some(work), _) => self.push(Prompt::Fit(work), out),
             (None, Some(board)) => {
@@ -353,7 +361,10 @@ impl State {
             Some(_) => return self.refuse("After the point: line 1, 2 or 3.", out),
             None => (circuit, None),
         };
-        let circuit = way.parse().ok().and_then(|way| CircuitNo::new(way, line).ok());
+        let circuit = way
+            .parse()
+            .ok()
+            .and_then(|way| CircuitNo::new(way, line).ok());
         if circuit.is_none() && point.is_none() {
             return self.refuse("Type the number of the circuit, then enter.", out);
         }
@@ -368,12 +379,19 @@ impl State {
     /// Goes to a place called by name; what was not said is where the tester stands.
     pub(super) fn go_to(&mut self, place: &Place, out: &mut Vec<Effect>) {
         let named = place.name.as_ref().and_then(|name| {
-            self.job().place_names.iter().find(|p| p.name == *name).cloned()
+            self.job()
+                .place_names
+                .iter()
+                .find(|p| p.name == *name)
+                .cloned()
         });
         if let (Some(name), None) = (&place.name, &named) {
             return self.refuse(format!("`{name}` is no place of this job."), out);
         }
-        let called = place.board.clone().or(named.as_ref().and_then(|n| n.board.clone()));
+        let called = place
+            .board
+            .clone()
+            .or(named.as_ref().and_then(|n| n.board.clone()));
         let circuit = place.circuit.or(named.as_ref().and_then(|n| n.circuit));
         let Some(board) = called.clone().or_else(|| self.here.board.clone()) else {
             return self.refuse("Call the board first.", out);
@@ -425,7 +443,10 @@ impl State {
                 self.here.board = Some(board.clone());
                 self.here.circuit = circuit;
                 let at = circuit.map_or(board.to_string(), |c| format!("{board}/{c}"));
-                self.refuse(format!("Nothing is open at {at}. Call a test to repeat it."), out);
+                self.refuse(
+                    format!("Nothing is open at {at}. Call a test to repeat it."),
+                    out,
+                );
             }
         }
     }
@@ -437,9 +458,8 @@ impl State {
         }
         let dead = self.open_dead().count();
         let works = self.standing.works_in.len();
-        (dead > 0 || works > 0).then(|| {
-            format!("Live tests stay shut: {dead} dead tests open, {works} works in.")
-        })
+        (dead > 0 || works > 0)
+            .then(|| format!("Live tests stay shut: {dead} dead tests open, {works} works in."))
     }
 
     /// Takes up a kind of test: here if it can be done here, else the first that is open.
@@ -479,10 +499,10 @@ impl State {
 
     /// Goes to one test.
     pub(super) fn call(&mut self, target: Target, out: &mut Vec<Effect>) {
-        if is_live(target.test) {
-            if let Some(why) = self.live_shut() {
-                return self.refuse(why, out);
-            }
+        if is_live(target.test)
+            && let Some(why) = self.live_shut()
+        {
+            return self.refuse(why, out);
         }
         if matches!(self.top(), Prompt::Trouble(_)) || !self.pending.is_empty() {
             return self.refuse("Try again (Enter), or drop it (-).", out);

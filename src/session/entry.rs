@@ -8,9 +8,7 @@ use crate::{
         expect::{Assessment, Expected, Verdict},
         kept::Value,
         reading::{Bound, Reading, Unit},
-        record::{
-            AlternativeKept, Entered, ExpectedShown, FindingKept, ReadingKept, Record,
-        },
+        record::{AlternativeKept, Entered, ExpectedShown, FindingKept, ReadingKept, Record},
         test::{Target, TestKind},
     },
     speech::meaning::{Heard, Meaning},
@@ -80,7 +78,11 @@ pub(super) fn type_key(draft: &mut String, key: Key, test: TestKind) -> Typed {
             Typed::Changed
         }
         Key::Slash if draft.is_empty() => {
-            draft.push_str(if open_is_over(test) { "over-range" } else { "open" });
+            draft.push_str(if open_is_over(test) {
+                "over-range"
+            } else {
+                "open"
+            });
             Typed::Changed
         }
         Key::Slash if draft == "open" => {

@@ -31,6 +31,9 @@ pub enum Key {
     Talk,
     /// A letter, in lower case, or `?`.
     Letter(char),
+    /// The end of a line of keys, where keys come in lines: enter where a figure is being typed,
+    /// nothing anywhere else, so that picking a line never affirms what comes after it.
+    LineEnd,
 }
 
 /// Why the session is asked to end from outside.

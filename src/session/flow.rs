@@ -59,18 +59,17 @@ impl State {
             return Some(called.clone());
         }
         // Live tests come only when no dead one is left: `rank` puts them last.
-        let here = (
-            self.here.stage,
-            self.here.board.clone(),
-            self.here.circuit,
-        );
+        let here = (self.here.stage, self.here.board.clone(), self.here.circuit);
         self.open()
             .min_by_key(|target| {
                 let (stage, board, circuit) = group(target);
                 (
                     is_live(target.test),
                     // Passed over: last, the longest ago first.
-                    self.passed.iter().position(|t| t == *target).map_or(0, |at| at + 1),
+                    self.passed
+                        .iter()
+                        .position(|t| t == *target)
+                        .map_or(0, |at| at + 1),
                     (Some(stage), board, circuit) != here,
                 )
             })
@@ -115,18 +114,35 @@ impl State {
             Some(prompt) => prompt,
             None => self.ask(&target),
         };
-        if let Prompt::Ask(_) = prompt {
-            self.here.stage = Some(target.test.stage());
-            if self.trail.last() != Some(&target) {
-                self.trail.push(target.clone());
+        match &prompt {
+            Prompt::Ask(_) => {
+                self.here.stage = Some(target.test.stage());
+                self.stand_at(&target);
+                if self.trail.last() != Some(&target) {
+                    self.trail.push(target.clone());
+                }
             }
+            Prompt::TakeOut(work) => {
+                if work.board.is_some() {
+                    self.here.board.clone_from(&work.board);
+                    self.here.circuit = work.circuit;
+                }
+            }
+            Prompt::Hold(hold) => {
+                self.here.board = Some(hold.board.clone());
+                self.here.circuit = Some(hold.circuit);
+            }
+            _ => self.stand_at(&target),
         }
+        self.replace(prompt, out);
+    }
+
+    fn stand_at(&mut self, target: &Target) {
         if target.board.is_some() {
             self.here.board.clone_from(&target.board);
-            self.here.circuit = target.circuit;
         }
+        self.here.circuit = target.circuit;
         self.here.point = target.point;
-        self.replace(prompt, out);
     }
 
     /// The prompt that asks for a reading.
@@ -148,12 +164,20 @@ impl State {
 
     /// Stages of circuits that can be closed now and are not yet.
     fn closable(&self) -> Option<Vec<Group>> {
-        // A stage closes when its last test is in: it is enough to look where the tester has just
-        // been, and everywhere when a session begins.
-        let mut groups: Vec<Group> = match self.trail.last() {
-            Some(last) => vec![group(last)],
-            None => self.standing.kept.iter().map(|(t, _)| group(t)).collect(),
-        };
+        // A stage closes when its last test is in and its last work out: it is enough to look at
+        // the place where the tester has just been, and everywhere when a session begins.
+        let last = self.trail.last().map(|t| (t.board.clone(), t.circuit));
+        let mut groups: Vec<Group> = self
+            .setup
+            .required()
+            .iter()
+            .filter(|t| last.is_none() || last == Some((t.board.clone(), t.circuit)))
+            .filter(|t| {
+                self.standing.kept.value(t).is_some() || self.standing.skipped.contains_key(t)
+            })
+            .map(group)
+            .collect();
+        groups.sort();
         groups.dedup();
         groups.retain(|at| !self.standing.closed.contains(at) && self.may_close(at));
         (!groups.is_empty()).then_some(groups)
@@ -207,13 +231,21 @@ impl State {
     /// The circuits that close with a board's close-up: all their dead tests are in or left out,
     /// and no temporary work is in. Closing up is refused before (see `act`).
     pub(super) fn closing_circuits(&self, board: &BoardId) -> Vec<Group> {
-        let circuits = self.job().board(board).into_iter().flat_map(|b| &b.circuits);
+        let circuits = self
+            .job()
+            .board(board)
+            .into_iter()
+            .flat_map(|b| &b.circuits);
         circuits
             .map(|circuit| (Stage::CloseUp, Some(board.clone()), Some(circuit.no)))
             .filter(|(_, board, circuit)| {
                 let place = |b: &Option<BoardId>, c: Option<CircuitNo>| (b, c) == (board, *circuit);
                 !self.open_dead().any(|t| place(&t.board, t.circuit))
-                    && !self.standing.works_in.iter().any(|w| place(&w.board, w.circuit))
+                    && !self
+                        .standing
+                        .works_in
+                        .iter()
+                        .any(|w| place(&w.board, w.circuit))
             })
             .collect()
     }

@@ -26,11 +26,7 @@ pub(super) const PAGE_LINES: usize = 6;
 pub(super) fn by_board(stage: Stage) -> bool {
     !matches!(
         stage,
-        Stage::Instrument
-            | Stage::Nulling
-            | Stage::Bonding
-            | Stage::Electrode
-            | Stage::Energise
+        Stage::Instrument | Stage::Nulling | Stage::Bonding | Stage::Electrode | Stage::Energise
     )
 }
 
@@ -87,7 +83,9 @@ impl State {
             }));
             let left = self.standing.skipped.len();
             if left > 0 {
-                reminders.push(format!("Left out with a reason: {left} tests. See the review."));
+                reminders.push(format!(
+                    "Left out with a reason: {left} tests. See the review."
+                ));
             }
         }
         Prompt::Gate(Gate {
@@ -101,6 +99,10 @@ impl State {
 
     /// The first thing missing before this test, in the order in which it has to be done.
     pub(super) fn before(&self, target: &Target) -> Option<Prompt> {
+        // What was left behind comes before anything new.
+        if let Some(prompt) = self.leave(target) {
+            return Some(prompt);
+        }
         let board = self.board_of(target);
         let stage = target.test.stage();
         if is_live(target.test) {
@@ -118,9 +120,6 @@ impl State {
                     return Some(self.gate(stage, board.as_ref()));
                 }
             }
-        }
-        if let Some(prompt) = self.leave(target) {
-            return Some(prompt);
         }
         trade::works_needed(self.job(), target)
             .into_iter()
@@ -174,7 +173,11 @@ impl State {
             };
             self.standing.works_in.iter().find(left).cloned()
         };
-        in_the_way.into_iter().next().or_else(idle).map(Prompt::TakeOut)
+        in_the_way
+            .into_iter()
+            .next()
+            .or_else(idle)
+            .map(Prompt::TakeOut)
     }
 
     pub(super) fn hold(&self, board: &BoardId, circuit: CircuitNo) -> Prompt {
@@ -209,7 +212,12 @@ impl State {
             };
             let entry = self.standing.kept.entry(target).unwrap_or_default();
             let at = (Stage::Insulation, Some(board.clone()), Some(circuit));
-            if self.standing.acknowledged.get(&at).is_none_or(|no| *no < entry) {
+            if self
+                .standing
+                .acknowledged
+                .get(&at)
+                .is_none_or(|no| *no < entry)
+            {
                 charged.insert((board.clone(), circuit));
             }
         }

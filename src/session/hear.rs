@@ -63,6 +63,7 @@ impl State {
             Meaning::Control(Control::Confirmed) => Act::Value(Entry::Tick(true)),
             Meaning::Control(Control::NotConfirmed) => Act::Value(Entry::Tick(false)),
             Meaning::Control(Control::Test(test)) => Act::Test(test),
+            Meaning::Control(Control::Stage(stage)) => Act::Stage(stage),
             Meaning::Control(Control::Reason(n)) => Act::Pick(n),
             Meaning::Control(Control::Correction(Some(inner))) => {
                 return self.correction(*inner, how, out);
@@ -92,10 +93,7 @@ impl State {
         match self.top() {
             Prompt::Dead(dead) if dead.step == DeadStep::Number => {
                 let figure = reading.figure();
-                figure
-                    .chars()
-                    .all(|c| c.is_ascii_digit())
-                    .then_some(figure)
+                figure.chars().all(|c| c.is_ascii_digit()).then_some(figure)
             }
             _ => None,
         }

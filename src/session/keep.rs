@@ -87,19 +87,17 @@ impl State {
     }
 
     /// What a kept record changes besides the standing; true when the work moves on.
-    fn after(
-        &mut self,
-        no: EntryNo,
-        record: &Record,
-        failed: bool,
-        out: &mut Vec<Effect>,
-    ) -> bool {
+    fn after(&mut self, no: EntryNo, record: &Record, failed: bool, out: &mut Vec<Effect>) -> bool {
         match record {
             Record::Reading(reading) => {
                 out.push(Effect::Tone(Tone::Saved));
                 self.note(format!("Kept: {} (entry {no}).", value_text(reading)));
                 self.done_with(&reading.target);
-                if let (TestKind::Insulation(_) | TestKind::Separation, Some(board), Some(circuit)) = (
+                if let (
+                    TestKind::Insulation(_) | TestKind::Separation,
+                    Some(board),
+                    Some(circuit),
+                ) = (
                     reading.target.test,
                     &reading.target.board,
                     reading.target.circuit,
@@ -120,9 +118,11 @@ impl State {
                 circuit,
                 ..
             } => {
-                self.note(format!("{}: acknowledged.", stage.title()));
                 if let (Some(board), Some(circuit)) = (board, circuit) {
                     self.charged.remove(&(board.clone(), *circuit));
+                    self.note("Discharged.");
+                } else {
+                    self.note(format!("{}: acknowledged.", stage.title()));
                 }
             }
             Record::ProvedDead { board, .. } => {
@@ -131,11 +131,11 @@ impl State {
             }
             Record::WorkIn { work, .. } => {
                 self.left_in.remove(work);
-                self.note(format!("IN: {}.", work.kind.words()));
+                self.note(format!("On the list: {}.", work.kind.words()));
             }
             Record::WorkOut { work, .. } => {
                 self.left_in.remove(work);
-                self.note(format!("OUT: {}.", work.kind.words()));
+                self.note(format!("Off the list: {}.", work.kind.words()));
             }
             Record::Incident { .. } | Record::Note { .. } => return false,
             _ => {}

@@ -24,6 +24,12 @@ impl State {
         if key == Key::Talk {
             return self.talk(out);
         }
+        if key == Key::LineEnd {
+            if self.typing_now() {
+                self.key(Key::Enter, out);
+            }
+            return;
+        }
         if let Key::Letter(letter) = key {
             return match letter_act(letter) {
                 Some(act) => self.act(act, &how, out),
@@ -37,8 +43,7 @@ impl State {
             }
             // A digit over a read-back begins another figure; what was read back is dropped.
             Prompt::Confirm(c)
-                if matches!(key, Key::Digit(_) | Key::Point)
-                    && c.target.test.unit().is_some() =>
+                if matches!(key, Key::Digit(_) | Key::Point) && c.target.test.unit().is_some() =>
             {
                 let (target, text) = (c.target.clone(), c.entry.to_string());
                 let test = target.test;
@@ -66,6 +71,16 @@ impl State {
                 self.act(act, &how, out);
             }
             _ => self.act(common(key), &how, out),
+        }
+    }
+
+    /// A figure or a number is half typed.
+    fn typing_now(&self) -> bool {
+        match self.top() {
+            Prompt::Ask(ask) => self.drafts.contains_key(&ask.target),
+            Prompt::Call(text) => !text.is_empty(),
+            Prompt::Dead(dead) => dead.step == DeadStep::Number && !dead.number.is_empty(),
+            _ => false,
         }
     }
 
@@ -145,7 +160,7 @@ fn common(key: Key) -> Act {
         Key::Slash => Act::Command(Control::SayAgain),
         Key::Star => Act::Menu,
         Key::Leave | Key::Erase => Act::Command(Control::Disregard),
-        Key::Point | Key::Talk | Key::Letter(_) => Act::Nothing,
+        Key::Point | Key::Talk | Key::Letter(_) | Key::LineEnd => Act::Nothing,
     }
 }
 

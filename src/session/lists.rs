@@ -5,7 +5,6 @@
 
 use crate::domain::{
     expect::Expected,
-    place::BoardId,
     test::{Target, TestKind},
 };
 
@@ -137,7 +136,11 @@ impl State {
             .into_iter()
             .map(|t| {
                 let again = self.standing.repeats.contains_key(t);
-                let text = format!("{}{}", utter::target_text(t), if again { " AGAIN" } else { "" });
+                let text = format!(
+                    "{}{}",
+                    utter::target_text(t),
+                    if again { " AGAIN" } else { "" }
+                );
                 (text, Choice::Target(t.clone()))
             })
             .collect();
@@ -187,11 +190,6 @@ impl State {
             }),
             out,
         );
-    }
-
-    /// The title of a board, with its name where it has one.
-    pub(super) fn board_text(&self, id: &BoardId) -> String {
-        id.to_string()
     }
 }
 

@@ -69,15 +69,37 @@ pub fn screen(state: &State, width: usize, height: usize) -> Vec<Line> {
         text: cut(text, width),
         weight,
     };
-    let mut top = vec![line(&view.place, Weight::Strong), line(&view.title, Weight::Strong)];
+    let mut top = vec![
+        line(&view.place, Weight::Strong),
+        line(&view.title, Weight::Strong),
+    ];
     if !view.range.is_empty() {
-        top.extend(wrap(&view.range, width).iter().take(2).map(|l| line(l, Weight::Plain)));
+        top.extend(
+            wrap(&view.range, width)
+                .iter()
+                .take(2)
+                .map(|l| line(l, Weight::Plain)),
+        );
     }
     let mut bottom = Vec::new();
-    let loud = if view.alarm { Weight::Alarm } else { Weight::Plain };
-    bottom.extend(wrap(&view.notice, width).iter().take(2).map(|l| line(l, loud)));
+    let loud = if view.alarm {
+        Weight::Alarm
+    } else {
+        Weight::Plain
+    };
+    bottom.extend(
+        wrap(&view.notice, width)
+            .iter()
+            .take(2)
+            .map(|l| line(l, loud)),
+    );
     bottom.push(line(&view.input, Weight::Plain));
-    bottom.extend(wrap(&view.question, width).iter().take(2).map(|l| line(l, Weight::Strong)));
+    bottom.extend(
+        wrap(&view.question, width)
+            .iter()
+            .take(2)
+            .map(|l| line(l, Weight::Strong)),
+    );
     bottom.push(line(&view.press, Weight::Dim));
     bottom.push(line(&view.say, Weight::Dim));
     bottom.push(line(&view.status, Weight::Dim));
@@ -126,7 +148,10 @@ fn place(state: &State) -> String {
     let open = state.open().count();
     let name = match (&state.here.board, state.here.circuit) {
         (Some(board), Some(no)) => {
-            let name = state.job().circuit(board, no).map_or("", |c| c.name.as_str());
+            let name = state
+                .job()
+                .circuit(board, no)
+                .map_or("", |c| c.name.as_str());
             format!("{board}/{no} {name}")
         }
         (Some(board), None) => format!("{board} {}", state.job().reference),
@@ -167,6 +192,9 @@ fn base(state: &State, view: &mut View) {
                 format!("Between {}.", dead.pairs()),
                 match (dead.method, dead.number.as_str()) {
                     (None, _) => "Indicator proved before and after.".into(),
+                    (Some(method), _) if dead.step == DeadStep::Number => {
+                        format!("Indicator on a {method}.")
+                    }
                     (Some(method), "") => format!("Indicator on a {method}."),
                     (Some(method), no) => format!("Indicator no. {no} on a {method}."),
                 },
@@ -178,20 +206,25 @@ fn base(state: &State, view: &mut View) {
                     "digits, ENTER (may be empty)  - back".into(),
                     "the number, done".into(),
                 ),
-                _ => ("ENTER yes   - no   * menu".into(), "affirm, negative".into()),
+                _ => (
+                    "ENTER yes   - no   * menu".into(),
+                    "affirm, negative".into(),
+                ),
             };
             if dead.step == DeadStep::Number {
                 view.input = format!("typed: {}_", dead.number);
             }
         }
         Some(Prompt::Fit(work)) => {
-            view.title = "Fit before the test".into();
+            let (head, question) = utter::in_words(work.kind);
+            view.title = head.into();
             view.body = vec![utter::work_text(work)];
             if let Some(target) = state.wanted() {
-                view.body.push(format!("For: {}", utter::target_text(&target)));
+                view.body
+                    .push(format!("For: {}", utter::target_text(&target)));
             }
-            view.question = "Is it in?".into();
-            view.press = "ENTER it is in   - later   * menu".into();
+            view.question = question.into();
+            view.press = "ENTER done   - later   * menu".into();
             view.say = "done, negative, skip".into();
         }
         Some(Prompt::TakeOut(work)) => out_view(work, view),
@@ -200,8 +233,9 @@ fn base(state: &State, view: &mut View) {
             let held = state.now.saturating_sub(hold.since) / 1000;
             view.body = vec![
                 "Probes stay on. The conductors may hold a charge that shocks.".into(),
-                format!("Held {held} s. Read the volts: below 50 V?"),
+                "Read the volts: below 50 V?".into(),
             ];
+            view.input = format!("held {held} s");
             view.question = "Discharged?".into();
             view.press = "ENTER discharged   * menu".into();
             view.say = "done".into();
@@ -217,7 +251,10 @@ fn base(state: &State, view: &mut View) {
             }
             view.body.clone_from(&ask.connections);
             if let Some((no, value)) = &ask.stands {
-                view.body.insert(0, format!("Entry {no} holds {value}; a new one replaces it."));
+                view.body.insert(
+                    0,
+                    format!("Entry {no} holds {value}; a new one replaces it."),
+                );
             }
             let draft = state.drafts.get(&ask.target);
             if let Some(draft) = draft {
@@ -248,7 +285,10 @@ fn base(state: &State, view: &mut View) {
             let left = state.standing.skipped.len();
             let open = state.open().count();
             view.body = vec![
-                format!("{} values kept, {left} left out, {open} open.", state.standing.kept.iter().count()),
+                format!(
+                    "{} values kept, {left} left out, {open} open.",
+                    state.standing.kept.iter().count()
+                ),
                 "What is open or left out stands in the review.".into(),
             ];
             view.question = "End the session?".into();
@@ -277,11 +317,12 @@ fn gate_view(gate: &Gate, view: &mut View) {
 }
 
 fn out_view(work: &crate::domain::record::Work, view: &mut View) {
-    view.title = "TAKE OUT".into();
+    let (head, question) = utter::out_words(work.kind);
+    view.title = head.into();
     view.range.clear();
     view.body = vec![utter::work_text(work)];
-    view.question = "Is it out, and as it was?".into();
-    view.press = "ENTER it is out   - still in   * menu".into();
+    view.question = question.into();
+    view.press = "ENTER done   - not yet   * menu".into();
     view.say = "done, negative".into();
 }
 
@@ -375,7 +416,11 @@ fn over(state: &State, view: &mut View) {
                 "Everything affirmed is kept.".into(),
                 "What is not affirmed will be asked again.".into(),
             ];
-            let works = state.standing.works_in.iter().map(|w| format!("STILL IN: {}", utter::work_text(w)));
+            let works = state
+                .standing
+                .works_in
+                .iter()
+                .map(|w| format!("STILL IN: {}", utter::work_text(w)));
             view.body.extend(works);
             view.question = "End now?".into();
             view.press = "ENTER end   - go on".into();
@@ -384,10 +429,10 @@ fn over(state: &State, view: &mut View) {
         Prompt::TakeOut(work) => out_view(work, view),
         Prompt::Fit(work) => {
             view.range.clear();
-            view.title = "Note a work that went in".into();
+            view.title = "Onto the list of works".into();
             view.body = vec![utter::work_text(work)];
-            view.question = "Is it in?".into();
-            view.press = "ENTER it is in   - no".into();
+            view.question = utter::in_words(work.kind).1.into();
+            view.press = "ENTER done   - no".into();
             view.say = "done, negative".into();
         }
         _ => {}
@@ -405,16 +450,21 @@ fn verdict(candidate: &Candidate) -> &'static str {
 fn confirm_view(candidate: &Candidate, view: &mut View) {
     let off = candidate.assessment.verdict.questioned();
     view.alarm = off;
-    view.body = vec![match &candidate.heard {
-        Some(words) => format!("Heard: {words}"),
-        None => "Typed.".into(),
-    }];
+    view.body = candidate
+        .heard
+        .iter()
+        .map(|words| format!("Heard: {words}"))
+        .collect();
     if off && matches!(candidate.entry, Entry::Reading(_)) {
         view.body.push(format!("! {}", verdict(candidate)));
         view.body.extend(findings(candidate).into_iter().take(1));
     }
     view.input = format!("= {}", candidate.entry);
-    view.question = format!("{}  right?", candidate.entry);
+    view.question = match &candidate.entry {
+        Entry::Reading(reading) => format!("{reading}, right?"),
+        Entry::Tick(true) => "In order, right?".into(),
+        Entry::Tick(false) => "NOT in order, right?".into(),
+    };
     view.press = "ENTER affirm   - negative   * menu".into();
     view.say = "affirm, negative, say again".into();
 }

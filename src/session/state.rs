@@ -268,8 +268,18 @@ impl State {
             }
             Event::ClockChanged(how) => self.keep_incident(&format!("clock changed: {how}"), out),
             Event::Stop(cause) => self.stop(cause, out),
-            Event::Key(key) => self.key(key, out),
-            Event::Heard(heard) => self.hear(heard, out),
+            Event::Key(key) => {
+                // What was said about the last key or word does not stand beside the next.
+                self.notice.clear();
+                self.heard.clear();
+                self.key(key, out);
+            }
+            Event::Heard(heard) => {
+                if !matches!(self.top(), Prompt::Standby) {
+                    self.notice.clear();
+                }
+                self.hear(heard, out);
+            }
         }
     }
 

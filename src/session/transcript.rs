@@ -17,6 +17,7 @@ pub struct Transcript {
     width: usize,
     keys: String,
     last: Vec<String>,
+    notice: Vec<String>,
 }
 
 impl Transcript {
@@ -27,12 +28,14 @@ impl Transcript {
             width,
             keys: String::new(),
             last: Vec::new(),
+            notice: Vec::new(),
         }
     }
 
     /// Takes note of an event before the step that takes it; gives the lines to print, if any.
     pub fn event(&mut self, event: &Event) -> Vec<String> {
         match event {
+            Event::Key(Key::LineEnd) => Vec::new(),
             Event::Key(key) => {
                 if !self.keys.is_empty() {
                     self.keys.push(' ');
@@ -64,33 +67,46 @@ impl Transcript {
             return Vec::new();
         }
         let view = view(state);
+        let mut notice = Vec::new();
+        add(&mut notice, self.width, &view.notice, "* ");
         let mut lines = Vec::new();
-        let mut add = |text: &str, indent: &str| {
-            if !text.is_empty() {
-                let width = self.width.saturating_sub(indent.len());
-                lines.extend(wrap(text, width).iter().map(|l| format!("{indent}{l}")));
+        if state.ended() {
+            let kept = state.standing().kept.iter().count();
+            let open = state.open().count();
+            let text = format!("Session ended. {kept} values kept, {open} tests open.");
+            add(&mut lines, self.width, &text, "");
+        } else {
+            add(&mut lines, self.width, &view.place, "");
+            add(&mut lines, self.width, &view.title, "");
+            add(&mut lines, self.width, &view.range, "");
+            for text in &view.body {
+                add(&mut lines, self.width, text, "  ");
             }
-        };
-        add(&view.notice, "* ");
-        add(&view.place, "");
-        add(&view.title, "");
-        add(&view.range, "");
-        for text in &view.body {
-            add(text, "  ");
+            add(&mut lines, self.width, &view.question, "? ");
         }
-        add(&view.question, "? ");
         // Digits being typed change the input line only: they are printed with their enter.
-        if lines == self.last {
+        let same = lines == self.last;
+        if same && (notice.is_empty() || notice == self.notice) {
+            self.notice = notice;
             return Vec::new();
         }
         let mut new = self.keys();
         if !new.is_empty() || !self.last.is_empty() {
             new.push(String::new());
         }
-        // Place and title are not printed again while the tester stays there.
-        let same_place = self.last.contains(&view.place) && self.last.contains(&view.title);
-        new.extend(lines.iter().filter(|l| !(same_place && **l == view.place)).cloned());
+        new.extend(notice.iter().cloned());
+        if !same {
+            // At the same prompt only what changed is printed again, and the question.
+            let question = lines.iter().position(|l| l.starts_with("? ")).unwrap_or(0);
+            let same_place = self.last.len() > 1 && lines.len() > 1 && self.last[..2] == lines[..2];
+            let known = |at: usize, line: &String| {
+                at < question && (at == 0 || same_place) && self.last.contains(line)
+            };
+            let fresh = lines.iter().enumerate().filter(|(at, l)| !known(*at, l));
+            new.extend(fresh.map(|(_, line)| line.clone()));
+        }
         self.last = lines;
+        self.notice = notice;
         new
     }
 
@@ -101,6 +117,13 @@ impl Transcript {
         }
         let keys = std::mem::take(&mut self.keys);
         wrap(&format!(">> keys: {keys}"), self.width)
+    }
+}
+
+fn add(lines: &mut Vec<String>, width: usize, text: &str, indent: &str) {
+    if !text.is_empty() {
+        let width = width.saturating_sub(indent.len());
+        lines.extend(wrap(text, width).iter().map(|l| format!("{indent}{l}")));
     }
 }
 
@@ -116,6 +139,7 @@ fn key_text(key: Key) -> String {
         Key::Erase => "ERASE".into(),
         Key::Leave => "ESC".into(),
         Key::Talk => "TALK".into(),
+        Key::LineEnd => String::new(),
         Key::Letter(c) => c.to_string(),
     }
 }

@@ -8,7 +8,7 @@ use crate::{
         expect::{Expected, Verdict},
         place::Place,
         reading::{Bound, Reading},
-        record::Work,
+        record::{Work, WorkKind},
         test::Target,
     },
     speech::meaning::{Context, Control},
@@ -115,8 +115,14 @@ pub(super) fn prompt(state: &State) -> String {
             format!("{}. {}", gate.stage.title(), text.unwrap_or_default())
         }
         Prompt::Dead(dead) => dead_question(dead.step, dead.pairs()),
-        Prompt::Fit(work) => format!("Fit: {}. Done?", work_text(work)),
-        Prompt::TakeOut(work) => format!("Take out: {}. Out?", work_text(work)),
+        Prompt::Fit(work) => {
+            let (head, question) = in_words(work.kind);
+            format!("{head}: {}. {question}", work_text(work))
+        }
+        Prompt::TakeOut(work) => {
+            let (head, question) = out_words(work.kind);
+            format!("{head}: {}. {question}", work_text(work))
+        }
         Prompt::Hold(_) => "Hold the probes on until discharged. Discharged?".into(),
         Prompt::Ask(ask) => {
             let range = range_text(&ask.expected);
@@ -132,7 +138,10 @@ pub(super) fn prompt(state: &State) -> String {
             )
         }
         Prompt::List(list) => {
-            let lines: Vec<String> = list.shown().map(|(n, (t, _))| format!("{n}: {t}.")).collect();
+            let lines: Vec<String> = list
+                .shown()
+                .map(|(n, (t, _))| format!("{n}: {t}."))
+                .collect();
             format!("{} {}", list.title, lines.join(" "))
         }
         Prompt::Standby => "Standby.".into(),
@@ -146,7 +155,7 @@ pub(super) fn prompt(state: &State) -> String {
 /// The question of a step of proving dead.
 pub(super) fn dead_question(step: DeadStep, pairs: &str) -> String {
     match step {
-        DeadStep::Method => "Indicator proved on: 1 unit, 2 live source?".into(),
+        DeadStep::Method => "Proved on: 1 unit, 2 live source?".into(),
         DeadStep::Number => "Number of the indicator?".into(),
         DeadStep::Before => "Indicator proved just now?".into(),
         DeadStep::Dead => format!("No voltage: {pairs}?"),
@@ -275,6 +284,36 @@ pub(super) fn work_text(work: &Work) -> String {
     text
 }
 
+/// What is asked for a work to go in: a heading and a question.
+pub(super) fn in_words(kind: WorkKind) -> (&'static str, &'static str) {
+    match kind {
+        WorkKind::LineEarthLink
+        | WorkKind::CrossLineNeutral
+        | WorkKind::CrossLineEarth
+        | WorkKind::LivesJoined => ("Fit before the test", "Is it in?"),
+        WorkKind::RingLegsOut
+        | WorkKind::EarthOff
+        | WorkKind::LoadsOut
+        | WorkKind::ElectrodeOff => ("Disconnect before the test", "Is it off?"),
+        WorkKind::LongLeadNull => ("Null with the long lead in", "Is it nulled?"),
+    }
+}
+
+/// What is asked for a work to be undone: a heading and a question.
+pub(super) fn out_words(kind: WorkKind) -> (&'static str, &'static str) {
+    match kind {
+        WorkKind::LineEarthLink
+        | WorkKind::CrossLineNeutral
+        | WorkKind::CrossLineEarth
+        | WorkKind::LivesJoined => ("TAKE OUT", "Is it out?"),
+        WorkKind::RingLegsOut
+        | WorkKind::EarthOff
+        | WorkKind::LoadsOut
+        | WorkKind::ElectrodeOff => ("PUT BACK", "Is it back, as it was, tight?"),
+        WorkKind::LongLeadNull => ("CLEAR THE NULL", "Nulled again, short leads?"),
+    }
+}
+
 /// A place as called.
 pub(super) fn place_text(place: &Place) -> String {
     let mut parts = Vec::new();
@@ -297,11 +336,12 @@ pub(super) fn place_text(place: &Place) -> String {
 pub(super) fn control_text(control: &Control) -> String {
     match control {
         Control::Test(test) => test.title(),
+        Control::Stage(stage) => stage.title().into(),
         Control::Reason(n) => format!("reason {n}"),
         Control::Correction(Some(inner)) => {
             format!("correction {}", super::entry::meaning_text(inner))
         }
         Control::Correction(None) => "correction".into(),
-        plain => format!("{plain:?}").to_lowercase(),
+        plain => plain.word().replace('-', " "),
     }
 }
