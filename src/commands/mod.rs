@@ -4,6 +4,7 @@ pub mod failure;
 pub mod field;
 pub mod hear;
 pub mod join;
+mod logbook;
 pub mod plan;
 pub mod reckon;
 pub mod rehearse;

@@ -6,6 +6,7 @@
 //! beside this file. It leaves out what the entries mean (`domain::standing`) and how they are
 //! shown (`report`). It knows `domain` only.
 
+pub mod clips;
 pub mod error;
 pub mod inspect;
 mod lock;
