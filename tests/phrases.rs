@@ -325,6 +325,7 @@ fn places_are_called_by_number_line_and_letters() {
     );
     check(Context::Tick, "point three", "point 3");
     check(Context::Gate, "point three", "point 3");
+    check(Context::Gate, "ring", "stage Ring final circuits");
 }
 
 #[test]

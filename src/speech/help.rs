@@ -1,4 +1,5 @@
-//! What can be said, for the screen: the `@example` lines of the rules a context reaches.
+//! What can be said, for the screen: the `@example` lines of the rules that can be a context's
+//! whole phrase.
 //!
 //! Promises: lines fit 38 columns (40 with a margin), in the order in which the context's file
 //! names its rules, none twice. It leaves out what the phrases mean.
@@ -14,7 +15,7 @@ use super::{
 /// The widest line.
 const COLUMNS: usize = 38;
 
-/// The examples of every rule that the root of `file` reaches, outermost first.
+/// The examples of every rule that can be a whole phrase of the root of `file`, outermost first.
 #[must_use]
 pub fn examples(library: &Library, file: &str) -> Vec<String> {
     let root = RuleRef {
@@ -71,10 +72,20 @@ fn collect(
             Expansion::Rule(next) => {
                 collect(library, Some(&target.grammar.file), next, seen, found);
             }
-            Expansion::Sequence(parts) => todo.extend(parts.iter().rev()),
+            // A rule that is only a part of a phrase is shown by the rule it is a part of.
+            Expansion::Sequence(parts) => {
+                let mut said = parts
+                    .iter()
+                    .filter(|part| !matches!(part, Expansion::Tag(..)));
+                if let (Some(only), None) = (said.next(), said.next()) {
+                    todo.push(only);
+                }
+            }
             Expansion::Choice(branches) => todo.extend(branches.iter().rev().map(|(_, e)| e)),
-            Expansion::Repeat { of, .. } => todo.push(of),
-            Expansion::Word(_) | Expansion::Tag(..) | Expansion::Void => {}
+            Expansion::Repeat { .. }
+            | Expansion::Word(_)
+            | Expansion::Tag(..)
+            | Expansion::Void => {}
         }
     }
 }

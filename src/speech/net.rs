@@ -117,7 +117,8 @@ pub(super) fn follow<'a>(
         )
     })?;
     let own = from.is_some_and(|from| from.file == grammar.file);
-    if !own && !rule.public {
+    // A root asked for as such may be private (SRGS 1.0, section 4.7).
+    if !own && !rule.public && reference.rule.is_some() {
         return Err(fail(
             format!("${name} of {} is not public", grammar.file),
             "write `public` before it where it is defined",

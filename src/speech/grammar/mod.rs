@@ -41,6 +41,8 @@
 
 mod lexer;
 mod parser;
+#[cfg(test)]
+mod tests;
 
 use std::collections::BTreeMap;
 
