@@ -11,7 +11,7 @@ fn refused(rules: &str, message: &str) {
     let text = format!("{HEAD}{rules}");
     let error = parse("t.abnf", &text)
         .map(|_| ())
-        .or_else(|error| Err(error.to_string()));
+        .map_err(|error| error.to_string());
     assert_eq!(error, Err(message.to_owned()));
 }
 
