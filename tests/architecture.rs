@@ -303,7 +303,7 @@ fn uses(code: &str, word: &str) -> bool {
         let after = code[at + word.len()..].chars().next();
         let starts = word.chars().next().is_some_and(part);
         let ends = word.chars().next_back().is_some_and(part);
-        !(starts && before.is_some_and(part)) && !(ends && after.is_some_and(part))
+        !(starts && before.is_some_and(part) || ends && after.is_some_and(part))
     })
 }
 

@@ -14,6 +14,7 @@ use super::{
     quantity::{Celsius, MilliohmPerMetre},
     range::{self, Band},
     reading::{Bound, Unit},
+    sequence,
     temperature::{self, From20},
     test::{Between, Target, TestKind},
 };
@@ -296,15 +297,9 @@ pub(crate) fn to_earth(between: Between) -> bool {
 
 fn insulating(job: &Job, target: &Target, circuit: Option<&Circuit>, kept: &Kept) -> Expected {
     let board = target.board.as_ref().and_then(|id| job.board(id));
-    let extra_low = target.test == TestKind::Separation
-        || circuit.is_some_and(|c| matches!(c.kind, CircuitKind::Selv | CircuitKind::Pelv));
     let electronics = circuit.is_some_and(|c| c.electronics);
-    let voltage = match (extra_low, electronics, job.supply.u0_v > 500.0) {
-        (true, _, _) => Voltage::ExtraLow,
-        (_, true, _) => Voltage::LowWithElectronics,
-        (_, _, true) => Voltage::Above500,
-        _ => Voltage::Low,
-    };
+    // The same choice that tells the tester the voltage to set.
+    let voltage = circuit.map_or(Voltage::Low, |c| sequence::voltage_class(job, c));
     let rule = insulation::rule(voltage);
     let instrument = range::insulation_of(job);
     let places = range::decimals(&instrument);
@@ -318,7 +313,7 @@ fn insulating(job: &Job, target: &Target, circuit: Option<&Circuit>, kept: &Kept
                 .into(),
         ));
     }
-    if board.is_some_and(|b| b.surge_protection) && !extra_low {
+    if board.is_some_and(|b| b.surge_protection) && voltage != Voltage::ExtraLow {
         why.push(note(
             "surge protection in this board: take it out, or it pulls a good reading down".into(),
         ));

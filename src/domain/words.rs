@@ -4,8 +4,8 @@
 //! two places. It leaves out sentences: those belong where they are shown.
 
 use super::plan::{
-    CircuitKind, ColdLoopRule, DeviceType, Earthing, ElectrodeRule, Insulation, LengthBasis,
-    Material, Rules, TemperatureRule,
+    CircuitKind, ColdLoopRule, Device, DeviceType, Earthing, ElectrodeRule, Insulation,
+    LengthBasis, Material, Rules, TemperatureRule,
 };
 
 /// A closed list whose members have a word each.
@@ -117,6 +117,16 @@ impl Worded for ElectrodeRule {
         ("50-volts", ElectrodeRule::FiftyVolts),
         ("200-ohm", ElectrodeRule::TwoHundredOhm),
     ];
+}
+
+impl Device {
+    /// Type and rating as written on it and in job files: `B32`, `BS 88-2 63`.
+    #[must_use]
+    pub fn label(&self) -> String {
+        let word = self.kind.word();
+        let gap = if word.len() > 1 { " " } else { "" };
+        format!("{word}{gap}{}", self.rated_a)
+    }
 }
 
 impl Default for Rules {

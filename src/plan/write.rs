@@ -208,17 +208,7 @@ fn circuit(out: &mut String, circuit: &Circuit) -> fmt::Result {
         writeln!(out, "{line}")?;
     }
     let device = &circuit.device;
-    let gap = if device.kind.word().len() > 1 {
-        " "
-    } else {
-        ""
-    };
-    writeln!(
-        out,
-        "device = \"{}{gap}{}\"",
-        device.kind.word(),
-        device.rated_a
-    )?;
+    writeln!(out, "device = \"{}\"", device.label())?;
     if let Some(rcd) = &device.rcd {
         writeln!(out, "rcd-ma = {}", rcd.rated_ma)?;
         if rcd.delayed {

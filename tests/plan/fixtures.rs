@@ -10,6 +10,14 @@ use handsfull::{
     plan,
 };
 
+/// The example jobs.
+pub const ALL: [&str; 4] = [
+    "workshop.toml",
+    "barn.toml",
+    "press-hall.toml",
+    "garden.toml",
+];
+
 /// A fixture's path.
 pub fn path(name: &str) -> PathBuf {
     Path::new(env!("CARGO_MANIFEST_DIR"))
@@ -24,12 +32,7 @@ pub fn job(name: &str) -> Job {
 
 #[test]
 fn every_fixture_loads() {
-    for name in [
-        "workshop.toml",
-        "barn.toml",
-        "press-hall.toml",
-        "garden.toml",
-    ] {
+    for name in ALL {
         job(name);
     }
 }

@@ -2,7 +2,7 @@
 
 use handsfull::domain::{sequence, test::TestKind};
 
-use super::fixtures::job;
+use super::fixtures::{ALL, job};
 
 fn listed(name: &str) -> String {
     let job = job(name);
@@ -34,12 +34,7 @@ fn extra_low_voltage_circuits_have_their_separation_tested() {
 
 #[test]
 fn no_test_is_required_twice() {
-    for name in [
-        "workshop.toml",
-        "barn.toml",
-        "press-hall.toml",
-        "garden.toml",
-    ] {
+    for name in ALL {
         let all = sequence::required(&job(name));
         for (i, target) in all.iter().enumerate() {
             assert!(!all[..i].contains(target), "{name}: {target}");

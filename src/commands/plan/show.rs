@@ -144,7 +144,7 @@ fn made_of(circuit: &Circuit) -> String {
         None => text.push_str(", no cpc"),
     }
     text.push_str(&format!(
-        ", {} m{} ({}), {} {} A",
+        ", {} m{} ({}), {}",
         circuit.length.m,
         if circuit.kind == CircuitKind::Ring {
             " of loop"
@@ -152,8 +152,7 @@ fn made_of(circuit: &Circuit) -> String {
             ""
         },
         circuit.length.basis.word(),
-        circuit.device.kind.word(),
-        circuit.device.rated_a,
+        circuit.device.label(),
     ));
     if let Some(rcd) = &circuit.device.rcd {
         text.push_str(&format!(

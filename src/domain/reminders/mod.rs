@@ -10,9 +10,10 @@ mod connections;
 pub use connections::connections;
 
 use super::{
+    insulation,
     place::{BoardId, CircuitNo},
     plan::{Board, Circuit, CircuitKind, Earthing, Job},
-    sequence::{extra_low, insulation_pairs, multiphase},
+    sequence::{extra_low, insulation_pairs, multiphase, voltage_class},
     test::{Between, Stage},
 };
 
@@ -38,7 +39,7 @@ pub fn reminders(
         Stage::Bonding => bonding(job),
         Stage::Continuity => continuity(&scope),
         Stage::Ring => ring(),
-        Stage::Insulation => insulation(&scope),
+        Stage::Insulation => insulating(&scope),
         Stage::Separation => separation(),
         Stage::Polarity => polarity(&scope),
         Stage::Electrode => electrode(job),
@@ -197,21 +198,20 @@ fn ring() -> Vec<String> {
     ])
 }
 
-fn insulation(scope: &Scope<'_>) -> Vec<String> {
+fn insulating(scope: &Scope<'_>) -> Vec<String> {
     let mut out = Vec::new();
     let circuits = scope.circuits();
-    let volts = |low: bool| {
-        circuits
-            .iter()
-            .any(|c| (extra_low(c.kind) || c.electronics) == low)
-    };
-    out.push(match (volts(false), volts(true)) {
-        (true, true) => {
-            "Up to 500 V d.c. or more on the conductors: it shocks. 250 V where said.".into()
-        }
-        (false, true) => "250 V d.c. on the conductors: it shocks.".into(),
-        _ => "500 V d.c. or more on the conductors: it shocks.".to_string(),
-    });
+    let mut volts: Vec<u16> = circuits
+        .iter()
+        .map(|circuit| insulation::rule(voltage_class(scope.job, circuit)).test_v)
+        .collect();
+    volts.sort_unstable();
+    volts.dedup();
+    let volts: Vec<String> = volts.iter().map(u16::to_string).collect();
+    out.push(format!(
+        "{} V d.c. on the conductors: it shocks.",
+        volts.join(" and ")
+    ));
     out.extend(lines(&[
         "Warn everybody. No hands on ends. Far ends guarded.",
         "Long runs store the charge. Keep the probes on until the display is below 50 V, then touch.",
