@@ -106,8 +106,8 @@ fn heading(document: &mut Fields<'_>, mistakes: &mut Mistakes<'_>) -> Job {
     } else {
         head.number("ambient-c", -40.0, 60.0, mistakes);
         mistakes.tell(format!(
-            "[job] gives no ambient-c: ranges are for conductors at {TABLE_TEMPERATURE_C} °C; \
-             4 % a ten degrees is what that is worth"
+            "[job] gives no ambient-c: ranges are for conductors at {TABLE_TEMPERATURE_C} °C, and \
+             every 10 °C are worth 4 %"
         ));
     }
     head.done(mistakes);
