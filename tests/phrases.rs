@@ -503,3 +503,65 @@ fn a_phrase_of_another_prompt_says_so() {
     };
     assert_eq!(why, "\"circuit twelve\" is not asked for here");
 }
+
+#[test]
+fn a_jobs_own_names_are_places_like_any_other() {
+    use handsfull::{domain::place::Place, speech::Phrases};
+
+    let board = || Place {
+        board: Some("DB2".to_owned().try_into().expect("a board")),
+        ..Place::default()
+    };
+    let names = [
+        ("boiler house".to_owned(), board()),
+        ("Mezzanine".to_owned(), Place::default()),
+    ];
+    let phrases = Phrases::with_places(&names).expect("two names");
+    for (context, said, meant) in [
+        (Context::All, "boiler house", "board DB2 boiler house"),
+        (
+            Context::Ohms,
+            "go to boiler house",
+            "board DB2 boiler house",
+        ),
+        (Context::Gate, "mezzanine", "mezzanine"),
+        (
+            Context::Ohms,
+            "correction boiler house",
+            "correction board DB2 boiler house",
+        ),
+    ] {
+        assert_eq!(brief(&phrases.understand(context, said)), meant, "{said}");
+        let words: Vec<&str> = said.split(' ').collect();
+        assert!(phrases.word_graph(context).cost(&words).is_some(), "{said}");
+    }
+    assert!(phrases.help(Context::Ohms).contains(&"boiler house".into()));
+    check(Context::All, "boiler house", "nothing");
+
+    for (name, message) in [
+        (
+            "büro",
+            "the place name `büro` cannot be said; use words of letters, such as `boiler house`",
+        ),
+        (
+            "circuit one",
+            "the place name `circuit one` already means something; choose another",
+        ),
+        (
+            "",
+            "the place name `` cannot be said; use words of letters, such as `boiler house`",
+        ),
+    ] {
+        let error = Phrases::with_places(&[(name.into(), Place::default())]).expect_err(name);
+        assert_eq!(error.to_string(), message);
+    }
+    let twice = [
+        ("loft".to_owned(), Place::default()),
+        ("Loft".to_owned(), Place::default()),
+    ];
+    let error = Phrases::with_places(&twice).expect_err("twice");
+    assert_eq!(
+        error.to_string(),
+        "the place name `loft` is given twice; leave one of them out"
+    );
+}

@@ -8,7 +8,10 @@
 
 use std::{collections::BTreeMap, fmt};
 
-use super::{guess::guess, word_graph::WordGraph};
+use super::{
+    guess::{guess, without_r},
+    word_graph::WordGraph,
+};
 
 /// The pronunciation file built into the tool.
 const BUILT_IN: &str = include_str!("../../grammars/pronunciations.txt");
@@ -37,6 +40,12 @@ impl Phone {
     #[must_use]
     pub fn name(self) -> &'static str {
         PHONES[usize::from(self.0)]
+    }
+
+    /// Whether it is a vowel: those of the CMU Pronouncing Dictionary begin with A, E, I, O or U.
+    #[must_use]
+    pub fn is_vowel(self) -> bool {
+        self.name().starts_with(['A', 'E', 'I', 'O', 'U'])
     }
 }
 
@@ -165,6 +174,7 @@ impl Lexicon {
             if !self.words.contains_key(word) {
                 let sounds = guess(word);
                 if !sounds.is_empty() {
+                    self.add(word, without_r(&sounds));
                     self.add(word, sounds);
                 }
             }

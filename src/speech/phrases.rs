@@ -3,7 +3,7 @@
 //! Promises: understanding, recogniser graphs and help all come from the same compiled grammar.
 //! It leaves out choosing between several hypotheses (see `decide`).
 
-use std::{collections::BTreeMap, sync::OnceLock};
+use std::{collections::BTreeMap, fmt, sync::OnceLock};
 
 use crate::domain::place::Place;
 
@@ -33,12 +33,20 @@ pub enum PhraseError {
 }
 
 /// What may be said in every context, with or without a job's own names of places.
-#[derive(Debug)]
 pub struct Phrases {
     library: Library,
     own: BTreeMap<String, Place>,
     /// Compiled when first asked for: a session uses two or three of them.
     nets: BTreeMap<Context, OnceLock<Net>>,
+}
+
+impl fmt::Debug for Phrases {
+    /// The names only: the grammars would fill pages.
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.debug_struct("Phrases")
+            .field("own", &self.own)
+            .finish_non_exhaustive()
+    }
 }
 
 impl Phrases {
