@@ -7,3 +7,5 @@ mod records;
 
 #[path = "report/review.rs"]
 mod review;
+#[path = "report/sheet.rs"]
+mod sheet;

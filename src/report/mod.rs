@@ -9,6 +9,7 @@ pub mod events;
 pub mod history;
 pub mod page;
 pub mod review;
+pub mod sheet;
 pub mod words;
 
 use crate::domain::record::EntryNo;
