@@ -213,6 +213,9 @@ fn bounds_and_displays_without_a_figure() {
         in excess of five hundred             => >500
         greater than two gig                  => >2 gigohm
         greater than zero point five          => >0.5
+        greater than triple nine              => >999
+        greater than four eighty              => >480
+        five hundred plus                     => >500
         less than nought point nought one     => <0.01
         less than zero point five megohms     => <0.5 megohm
         under one megohm                      => <1 megohm
@@ -227,6 +230,7 @@ fn bounds_and_displays_without_a_figure() {
         infinity                              => open
         no continuity                         => open
         over limit                            => open
+        overload                              => open
         not getting anything                  => open
         over range                            => over-range
         over-range                            => over-range
@@ -314,6 +318,9 @@ fn places_are_called_by_number_line_and_letters() {
         circuit twelve point three           => circuit 12 point 3
         circuit twelve socket three          => circuit 12 point 3
         go to circuit twelve                 => circuit 12
+        circuit number seven                 => circuit 7
+        DB1 circuit 15                       => board DB1 circuit 15
+        delta bravo one circuit one five     => board DB1 circuit 15
         socket three                         => point 3
         light two                            => point 2
         spur three                           => point 3
@@ -564,4 +571,12 @@ fn a_jobs_own_names_are_places_like_any_other() {
         error.to_string(),
         "the place name `loft` is given twice; leave one of them out"
     );
+}
+
+#[test]
+fn a_missing_point_after_zero_is_asked_for() {
+    let Meaning::Nothing(why) = understand(Context::Ohms, "zero five eight") else {
+        panic!("zero five eight is no reading");
+    };
+    assert_eq!(why, "after \"zero\" say the point: \"zero point five\"");
 }

@@ -74,9 +74,7 @@ fn collect(
             }
             // A rule that is only a part of a phrase is shown by the rule it is a part of.
             Expansion::Sequence(parts) => {
-                let mut said = parts
-                    .iter()
-                    .filter(|part| !matches!(part, Expansion::Tag(..)));
+                let mut said = parts.iter().filter(|part| !optional(part));
                 if let (Some(only), None) = (said.next(), said.next()) {
                     todo.push(only);
                 }
@@ -87,5 +85,16 @@ fn collect(
             | Expansion::Tag(..)
             | Expansion::Void => {}
         }
+    }
+}
+
+/// Whether nothing need be said for it.
+fn optional(expansion: &Expansion) -> bool {
+    match expansion {
+        Expansion::Tag(..) => true,
+        Expansion::Repeat { times, .. } => times.0 == 0,
+        Expansion::Choice(branches) => branches.iter().any(|(_, branch)| optional(branch)),
+        Expansion::Sequence(parts) => parts.iter().all(optional),
+        Expansion::Word(_) | Expansion::Rule(_) | Expansion::Void => false,
     }
 }

@@ -203,10 +203,17 @@ fn why_left(words: &[&str], understood: usize, next: &[String], whole: bool) -> 
     let so_far = words[..understood].join(" ");
     match words.get(understood) {
         Some(word) if understood == 0 => format!("no phrase of this prompt begins with \"{word}\""),
+        Some(word) if ["zero", "nought"].contains(&so_far.as_str()) && digit(word) => {
+            format!("after \"{so_far}\" say the point: \"{so_far} point {word}\"")
+        }
         Some(word) if whole => format!("\"{so_far}\" was understood, \"{word}\" after it was not"),
         Some(word) => format!("\"{word}\" cannot follow \"{so_far}\"; {}", listed(next)),
         None => format!("\"{so_far}\" is not finished; {}", listed(next)),
     }
+}
+
+fn digit(word: &str) -> bool {
+    ('0'..='9').any(|c| spelling::digit_word(c) == Some(word)) || word == "oh" || word == "nought"
 }
 
 fn listed(next: &[String]) -> String {

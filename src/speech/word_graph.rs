@@ -49,12 +49,7 @@ impl WordGraph {
     /// The words of a network, without its tags.
     #[must_use]
     pub fn of(net: &Net) -> WordGraph {
-        let mut maker = Maker {
-            net,
-            done: HashMap::new(),
-            known: HashMap::new(),
-            states: Vec::new(),
-        };
+        let mut maker = Maker::new(net);
         match maker.state(0) {
             Some(start) => WordGraph {
                 states: maker.states,
@@ -104,92 +99,128 @@ impl WordGraph {
     }
 }
 
-/// Equal states have equal keys: what they stop for and where each word leads, costs in grains.
-type Key = (Option<u32>, Vec<(String, u32, usize)>);
+/// Equal states have equal keys: what they stop for and where each word leads, costs in bits.
+type Key = (Option<u32>, Vec<(u32, u32, usize)>);
 
 struct Maker<'a> {
     net: &'a Net,
-    /// State of the network to state of the graph; `None` for a dead end.
-    done: HashMap<usize, Option<usize>>,
+    /// Every word of the network, sorted: arcs are compared by its place here.
+    words: Vec<&'a str>,
+    /// State of the network to state of the graph; the inner `None` is a dead end.
+    done: Vec<Option<Option<usize>>>,
     known: HashMap<Key, usize>,
     states: Vec<State>,
+    /// Least cost of the states reached in one search; infinite between searches.
+    best: Vec<f32>,
 }
 
-impl Maker<'_> {
+impl<'a> Maker<'a> {
+    fn new(net: &'a Net) -> Self {
+        let mut words: Vec<&str> = net
+            .states
+            .iter()
+            .flatten()
+            .filter_map(|arc| match &arc.label {
+                Label::Word(word) => Some(word.as_str()),
+                _ => None,
+            })
+            .collect();
+        words.sort_unstable();
+        words.dedup();
+        Maker {
+            net,
+            words,
+            done: vec![None; net.states.len()],
+            known: HashMap::new(),
+            states: Vec::new(),
+            best: vec![f32::INFINITY; net.states.len()],
+        }
+    }
+
     /// The graph's state for a state of the network, made (with all that follows) if need be.
     fn state(&mut self, of: usize) -> Option<usize> {
-        if let Some(done) = self.done.get(&of) {
-            return *done;
+        if let Some(done) = self.done[of] {
+            return done;
         }
         let mut stop: Option<f32> = None;
-        let mut arcs: HashMap<(String, usize), f32> = HashMap::new();
+        let mut arcs: Vec<(u32, usize, f32)> = Vec::new();
         for (state, cost) in self.silently_from(of) {
             if state == self.net.end {
                 stop = Some(stop.map_or(cost, |s| s.min(cost)));
             }
-            for arc in &self.net.states[state] {
+            let net = self.net;
+            for arc in &net.states[state] {
                 let Label::Word(word) = &arc.label else {
                     continue;
                 };
-                if let Some(to) = self.state(arc.to) {
-                    let best = arcs.entry((word.clone(), to)).or_insert(f32::INFINITY);
-                    *best = best.min(cost + arc.cost);
+                if let (Some(to), Ok(id)) =
+                    (self.state(arc.to), self.words.binary_search(&word.as_str()))
+                {
+                    arcs.push((id as u32, to, rounded(cost + arc.cost)));
                 }
             }
         }
+        arcs.sort_by(|a, b| (a.0, a.1).cmp(&(b.0, b.1)).then(a.2.total_cmp(&b.2)));
+        // The cheapest of several ways comes first and stays.
+        arcs.dedup_by_key(|arc| (arc.0, arc.1));
         let made = (stop.is_some() || !arcs.is_empty()).then(|| {
-            let mut arcs: Vec<Arc> = arcs
-                .into_iter()
-                .map(|((word, to), cost)| Arc {
-                    word: Some(word),
-                    cost: rounded(cost),
-                    to,
-                })
-                .collect();
-            arcs.sort_by(|a, b| (&a.word, a.to).cmp(&(&b.word, b.to)));
             let stop = stop.map(rounded);
             let key = (
                 stop.map(f32::to_bits),
-                arcs.iter()
-                    .map(|a| (a.word.clone().unwrap_or_default(), a.cost.to_bits(), a.to))
-                    .collect(),
+                arcs.iter().map(|a| (a.0, a.2.to_bits(), a.1)).collect(),
             );
             let next = self.states.len();
             let number = *self.known.entry(key).or_insert(next);
             if number == next {
+                let arcs = arcs
+                    .into_iter()
+                    .map(|(word, to, cost)| Arc {
+                        word: Some(self.words[word as usize].to_owned()),
+                        cost,
+                        to,
+                    })
+                    .collect();
                 self.states.push(State { arcs, stop });
             }
             number
         });
-        self.done.insert(of, made);
+        self.done[of] = Some(made);
         made
     }
 
     /// States reached without a word, each with its least cost, in the order of first reaching.
-    fn silently_from(&self, of: usize) -> Vec<(usize, f32)> {
-        let mut best: HashMap<usize, f32> = HashMap::from([(of, 0.0)]);
+    fn silently_from(&mut self, of: usize) -> Vec<(usize, f32)> {
+        self.best[of] = 0.0;
         let mut order = vec![of];
         let mut todo = vec![(of, 0.0_f32)];
         while let Some((state, cost)) = todo.pop() {
+            // A cheaper way was found after this one was put aside.
+            if cost > self.best[state] {
+                continue;
+            }
             for arc in &self.net.states[state] {
                 if matches!(arc.label, Label::Word(_)) {
                     continue;
                 }
                 let cost = cost + arc.cost;
-                match best.get_mut(&arc.to) {
-                    Some(known) if *known <= cost => continue,
-                    Some(known) => *known = cost,
-                    None => {
-                        best.insert(arc.to, cost);
-                        order.push(arc.to);
-                    }
+                let known = &mut self.best[arc.to];
+                if *known <= cost {
+                    continue;
                 }
+                if known.is_infinite() {
+                    order.push(arc.to);
+                }
+                *known = cost;
                 todo.push((arc.to, cost));
             }
         }
         order
             .into_iter()
-            .map(|state| (state, best[&state]))
+            .map(|state| {
+                let cost = self.best[state];
+                self.best[state] = f32::INFINITY;
+                (state, cost)
+            })
             .collect()
     }
 }
