@@ -72,7 +72,10 @@ def _block(p, k, h, i, key=None, drop=0.):
         n = l.shape[1]
         z = dot(h, jnp.concatenate([l[:768], l[768:]], 1))
         z = z[:, :-1, :n] + z[:, 1:, n:]
-        y, q = dot(jnp.concatenate([z[:, :-1], z[:, 1:]], -1), a) + p[f"b{i}"], h[:, 1:-1]
+        z, q = jnp.concatenate([z[:, :-1], z[:, 1:]], -1), h[:, 1:-1]
+        if i == 4:  # the layers above look at every third frame only
+            z, q = z[:, ::3], q[:, ::3]
+        y = dot(z, a) + p[f"b{i}"]
     else:
         y, q = dot(dot(h, l), a) + p[f"b{i}"], h
     y = jax.nn.relu(y) * k[f"s{i}"] + k[f"o{i}"]
@@ -81,13 +84,14 @@ def _block(p, k, h, i, key=None, drop=0.):
     return .66 * q + y
 
 
-def forward(p, k, x, key=None, drop=0.):
-    """Unnormalised scores."""
+def forward(p, k, x, key=None, drop=0., fixed_low=False):
+    """Unnormalised scores; `fixed_low` keeps the low layers, near half of the work, out of the gradient."""
     h = dot(jnp.concatenate([x[:, :-2], x[:, 1:-1], x[:, 2:]], -1), p["w1"]) + p["b1"]
     h = jax.nn.relu(h) * k["s1"] + k["o1"]
     for i in (2, 3, 4):
         h = _block(p, k, h, i)
-    h = h[:, ::3]
+    if fixed_low:
+        h = jax.lax.stop_gradient(h)
     keys = [None] * 16 if key is None else jax.random.split(key, 16)
     for i in range(5, 16):
         h = _block(p, k, h, i, keys[i], drop)
