@@ -18,6 +18,9 @@ TAPS = {2: 1, 3: 1, 4: 1, 5: 0} | {i: 3 for i in range(6, 16)}
 LOW = {f"{k}{i}" for i in (2, 3, 4) for k in "lab"} | {"w1", "b1"}
 
 
+HALF = jnp.bfloat16  # what layers hand on: half the memory traffic, which is what training waits for
+
+
 def load_trunk(seed=0):
     """(trainable, constant) arrays: the trunk with the zero i-vector folded in and a fresh last layer."""
     _, _, parts, _ = kaldi.split_model(places.trunk() / "am" / "final.mdl")
@@ -58,7 +61,7 @@ def _dot2(a, b):
 
 
 _dot2.defvjp(lambda a, b: (_product(a, b), (a, b)),
-             lambda ab, g: (_product(g, ab[1].T), _product(ab[0].T, g)))
+             lambda ab, g: (_product(g, ab[1].T).astype(ab[0].dtype), _product(ab[0].T, g)))
 
 
 def dot(x, w):
@@ -78,16 +81,16 @@ def _block(p, k, h, i, key=None, drop=0.):
         y = dot(z, a) + p[f"b{i}"]
     else:
         y, q = dot(dot(h, l), a) + p[f"b{i}"], h
-    y = jax.nn.relu(y) * k[f"s{i}"] + k[f"o{i}"]
+    y = (jax.nn.relu(y) * k[f"s{i}"] + k[f"o{i}"]).astype(HALF)
     if key is not None:
-        y = y * (1 + drop * jax.random.uniform(key, (y.shape[0], 1, y.shape[2]), minval=-2., maxval=2.))
-    return .66 * q + y
+        y = y * (1 + drop * jax.random.uniform(key, (y.shape[0], 1, y.shape[2]), minval=-2., maxval=2.)).astype(HALF)
+    return jnp.asarray(.66, HALF) * q + y
 
 
 def forward(p, k, x, key=None, drop=0., fixed_low=False):
     """Unnormalised scores; `fixed_low` keeps the low layers, near half of the work, out of the gradient."""
     h = dot(jnp.concatenate([x[:, :-2], x[:, 1:-1], x[:, 2:]], -1), p["w1"]) + p["b1"]
-    h = jax.nn.relu(h) * k["s1"] + k["o1"]
+    h = (jax.nn.relu(h) * k["s1"] + k["o1"]).astype(HALF)
     for i in (2, 3, 4):
         h = _block(p, k, h, i)
     if fixed_low:
