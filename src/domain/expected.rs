@@ -16,7 +16,7 @@ use super::{
     reading::{Bound, Unit},
     sequence,
     temperature::{self, From20},
-    test::{Between, Target, TestKind},
+    test::{Target, TestKind},
 };
 use rust_decimal::Decimal;
 
@@ -280,19 +280,6 @@ fn radial(job: &Job, target: &Target, circuit: &Circuit) -> Expected {
     sources.push(temperature::rule_source(job.rules.temperature));
 
     from_band(band.instrument(&instrument), &instrument, sources)
-}
-
-/// Whether a pair is measured to earth.
-pub(crate) fn to_earth(between: Between) -> bool {
-    matches!(
-        between,
-        Between::LineEarth
-            | Between::NeutralEarth
-            | Between::LivesEarth
-            | Between::L1Earth
-            | Between::L2Earth
-            | Between::L3Earth
-    )
 }
 
 fn insulating(job: &Job, target: &Target, circuit: Option<&Circuit>, kept: &Kept) -> Expected {

@@ -1,0 +1,9 @@
+//! The physics against the world: published cases, laws, libraries, and simulated faults.
+
+mod cases;
+mod command;
+mod faults;
+mod jobs;
+mod oracle;
+mod properties;
+mod simulate;
