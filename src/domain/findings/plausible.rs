@@ -21,7 +21,7 @@ pub(crate) fn prior(code: &str) -> f64 {
         "own-leg-link" => 0.004,
         "one-core-open" => 0.004,
         "cut-cable" => 0.001,
-        "bridge" => 0.001,
+        "bridge" => 0.003,
         "reversed" => 0.004,
         "second-ring" => 0.000_2,
         "lead-not-nulled" => 0.004,

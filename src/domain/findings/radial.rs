@@ -449,6 +449,8 @@ fn strays<'a>(series: &'a Series, run: &[At], ballot: &mut Ballot<'a>) {
     let earth = series.rates.last().copied().unwrap_or(rate);
     let plain = series.plain(rate, 1.0, true);
     let places = (run.len() * STRAYS.len()) as f64;
+    // A protective conductor alone that reads low usually touches metalwork.
+    let favour = if series.cores.len() == 1 { 1.5 } else { 0.0 };
     for place in run {
         let at = place.at_m * earth / 1000.0 * plausible::COPPER_MEAN;
         for share in STRAYS {
@@ -485,7 +487,7 @@ fn strays<'a>(series: &'a Series, run: &[At], ballot: &mut Ballot<'a>) {
             }
             let fit = pressed.log_likelihood(&series.seen) - places.ln();
             let no = place.no;
-            ballot.add("parallel-path", prior("parallel-path") + fit, move || {
+            ballot.add("parallel-path", prior("parallel-path") + favour + fit, move || {
                 let where_ = if no == 0 { String::new() } else { format!(" near point {no}") };
                 words(
                     format!("a parallel path of about {stray:.2} Ω{where_}"),

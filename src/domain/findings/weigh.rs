@@ -137,11 +137,11 @@ pub(crate) struct Ballot<'a> {
 /// Log of the plausibility of no fault before anything is read.
 const HEALTHY_PRIOR: f64 = -0.03;
 /// Inside its range a reading raises an alarm only when "no fault" is at most this likely (log of
-/// one in twenty).
-const ALARM: f64 = -3.0;
+/// six in ten).
+const ALARM: f64 = -0.5;
 /// A series this close to the prediction (squared distance) cannot raise one: no fault of ours is
 /// plausible enough to make up for it.
-const CLOSE: f64 = 10.0;
+const CLOSE: f64 = 6.0;
 /// Shares of the weight below this are not shown.
 const SHOWN: f64 = 0.004;
 

@@ -1,10 +1,8 @@
 //! A ring as it may be wired: segments, joints, opens, spurs, links, a bridge, and what every
 //! test of the ring would then read.
 //!
-//! Loops without a bridge are closed forms (two paths in parallel); a bridge goes to the nodal
-//! solver. All resistances are at the ambient of the job.
-
-use crate::domain::network::Network;
+//! Closed forms: two paths in parallel, and a star in place of the triangle that a bridge makes.
+//! The nodal solver gives the same (see the tests). All resistances are at the ambient of the job.
 
 /// Which reading of a ring.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -46,45 +44,79 @@ pub(crate) struct Wiring {
 }
 
 impl Wiring {
-    /// Ohm of core `c` from the start of leg 1 to fraction `x`.
-    fn up_to(&self, c: usize, x: f64) -> f64 {
-        let joints: f64 = self
-            .joints
+    /// Joints of core `c` between two fractions of the loop.
+    fn joints_within(&self, c: usize, from: f64, to: f64) -> f64 {
+        self.joints
             .iter()
-            .filter(|j| j.0 == c && j.1 < x)
+            .filter(|j| j.0 == c && j.1 >= from && j.1 < to)
             .map(|j| j.2)
-            .sum();
-        self.whole[c] * x + joints
+            .sum()
     }
 
-    /// Ohm of core `c` from fraction `x` to the end of leg 2.
-    fn onward(&self, c: usize, x: f64) -> f64 {
-        let joints: f64 = self
-            .joints
-            .iter()
-            .filter(|j| j.0 == c && j.1 >= x)
-            .map(|j| j.2)
-            .sum();
-        self.whole[c] * (1.0 - x) + joints
+    /// Ohm of core `c` between two fractions, without a bridge.
+    fn piece(&self, c: usize, from: f64, to: f64) -> f64 {
+        self.whole[c] * (to - from) + self.joints_within(c, from, to)
+    }
+
+    /// Core `c` seen from fraction `x`: ohm back to the start of leg 1, on to the end of leg 2, and
+    /// the stem between `x` and where the two part (nothing without a bridge).
+    fn seen_from(&self, c: usize, x: f64) -> (f64, f64, f64) {
+        const END: f64 = 1.0 + 1e-9;
+        let Some((p, q, metres)) = self.bridge else {
+            return (self.piece(c, 0.0, x), self.piece(c, x, END), 0.0);
+        };
+        let bridge = metres * self.per_m[c];
+        let (before, after) = (self.piece(c, 0.0, p), self.piece(c, q, END));
+        if x <= p || x >= q {
+            let arc = self.piece(c, p, q);
+            let both = arc * bridge / (arc + bridge);
+            return if x <= p {
+                let back = self.piece(c, 0.0, x);
+                (back, before - back + both + after, 0.0)
+            } else {
+                let on = self.piece(c, x, END);
+                (before + both + after - on, on, 0.0)
+            };
+        }
+        // Inside the bridged arc: the triangle of both parts and the bridge becomes a star
+        // (Kennelly 1899) whose centre is where the two ways part.
+        let (one, two) = (self.piece(c, p, x), self.piece(c, x, q));
+        let round = one + two + bridge;
+        (
+            before + one * bridge / round,
+            after + two * bridge / round,
+            one * two / round,
+        )
     }
 
     /// What a test reads, ohm; infinite: open.
     pub(crate) fn read(&self, what: What, spots: &[Spot]) -> f64 {
-        if self.bridge.is_some() {
-            return self.solve(what, spots);
-        }
+        let x = match what {
+            What::Cross(_, Some(spot)) => spots[spot].x,
+            _ => 0.0,
+        };
+        self.read_at(what, x, spots)
+    }
+
+    /// The same with the spot moved to fraction `x`.
+    pub(crate) fn read_at(&self, what: What, x: f64, spots: &[Spot]) -> f64 {
         match what {
-            What::End(c) => self.up_to(c, 1.0) + self.onward(c, 1.0),
+            What::End(c) => {
+                let (back, on, _) = self.seen_from(c, 0.0);
+                back + on
+            }
             What::Cross(other, spot) => {
-                let x = spot.map_or(0.0, |s| spots[s].x);
-                let (back, on) = (self.up_to(0, x), self.onward(0, x));
-                let (other_back, other_on) = (self.up_to(other, x), self.onward(other, x));
+                let (back, on, stem) = self.seen_from(0, x);
+                let (other_back, other_on, other_stem) = self.seen_from(other, x);
                 let (one, two) = if self.own_leg[other - 1] {
                     (back + other_back, on + other_on)
                 } else {
                     (back + other_on, on + other_back)
                 };
-                parallel(one, two) + spot.map_or(0.0, |s| self.branch(other, s, spots))
+                parallel(one, two)
+                    + stem
+                    + other_stem
+                    + spot.map_or(0.0, |s| self.branch(other, s, spots))
             }
         }
     }
@@ -98,52 +130,6 @@ impl Wiring {
             .sum();
         (spots[spot].spur_m + extra) * (self.per_m[0] + self.per_m[other])
     }
-
-    fn solve(&self, what: What, spots: &[Spot]) -> f64 {
-        let Some((from, to, metres)) = self.bridge else {
-            return f64::INFINITY;
-        };
-        let mut net = Network::new();
-        let x = match what {
-            What::Cross(_, Some(spot)) => spots[spot].x,
-            _ => 0.0,
-        };
-        // Each core: the board at both ends, the two ends of the bridge, and the spot read.
-        let mut stops = [0.0, from, to, x, 1.0];
-        stops.sort_by(f64::total_cmp);
-        let mut core = |c: usize| {
-            let nodes = net.nodes(stops.len());
-            for i in 1..stops.len() {
-                let ohm = self.up_to(c, stops[i]) - self.up_to(c, stops[i - 1]);
-                net.join(nodes[i - 1], nodes[i], ohm);
-            }
-            let at = |fraction: f64| {
-                let index = stops.iter().position(|s| (*s - fraction).abs() < 1e-12);
-                nodes[index.unwrap_or(0)]
-            };
-            net.join(at(from), at(to), metres * self.per_m[c]);
-            (nodes[0], nodes[stops.len() - 1], at(x))
-        };
-        match what {
-            What::End(c) => {
-                let (start, end, _) = core(c);
-                net.between(start, end).unwrap_or(f64::INFINITY)
-            }
-            What::Cross(other, spot) => {
-                let (line_start, line_end, line) = core(0);
-                let (other_start, other_end, second) = core(other);
-                if self.own_leg[other - 1] {
-                    net.join(line_start, other_start, 0.0);
-                    net.join(line_end, other_end, 0.0);
-                } else {
-                    net.join(line_start, other_end, 0.0);
-                    net.join(line_end, other_start, 0.0);
-                }
-                net.between(line, second).unwrap_or(f64::INFINITY)
-                    + spot.map_or(0.0, |s| self.branch(other, s, spots))
-            }
-        }
-    }
 }
 
 fn parallel(a: f64, b: f64) -> f64 {
@@ -153,5 +139,109 @@ fn parallel(a: f64, b: f64) -> f64 {
         (true, false) => a,
         (false, true) => b,
         (false, false) => f64::INFINITY,
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::domain::network::{Network, Node};
+
+    /// The same ring in the nodal solver, every stretch a resistor.
+    fn solved(wiring: &Wiring, other: usize, x: f64) -> f64 {
+        let mut net = Network::new();
+        let (p, q, metres) = wiring.bridge.unwrap_or((0.3, 0.7, f64::INFINITY));
+        let mut stops = vec![0.0, p, q, x, 1.0];
+        for joint in &wiring.joints {
+            stops.extend([joint.1 - 1e-9, joint.1 + 1e-9]);
+        }
+        stops.sort_by(f64::total_cmp);
+        let mut core = |c: usize| -> (Node, Node, Node) {
+            let nodes = net.nodes(stops.len());
+            for i in 1..stops.len() {
+                let joint: f64 = wiring
+                    .joints
+                    .iter()
+                    .filter(|j| j.0 == c && stops[i - 1] < j.1 && j.1 < stops[i])
+                    .map(|j| j.2)
+                    .sum();
+                let ohm = wiring.whole[c] * (stops[i] - stops[i - 1]) + joint;
+                net.join(nodes[i - 1], nodes[i], ohm);
+            }
+            let at = |s: f64| nodes[stops.iter().position(|t| *t == s).unwrap_or(0)];
+            net.join(at(p), at(q), metres * wiring.per_m[c]);
+            (nodes[0], nodes[stops.len() - 1], at(x))
+        };
+        let (line_start, line_end, line) = core(0);
+        let (start, end, second) = core(other);
+        if wiring.own_leg[other - 1] {
+            net.join(line_start, start, 0.0);
+            net.join(line_end, end, 0.0);
+        } else {
+            net.join(line_start, end, 0.0);
+            net.join(line_end, start, 0.0);
+        }
+        net.between(line, second).unwrap_or(f64::INFINITY)
+    }
+
+    fn ring() -> Wiring {
+        Wiring {
+            whole: [0.4446, 0.4446, 0.726],
+            per_m: [0.00741, 0.00741, 0.0121],
+            joints: Vec::new(),
+            extra_m: Vec::new(),
+            own_leg: [false; 2],
+            bridge: None,
+        }
+    }
+
+    #[track_caller]
+    fn agrees(wiring: &Wiring) {
+        for step in 1..20 {
+            let x = f64::from(step) / 20.0 + 0.003;
+            let spots = [Spot {
+                no: 1,
+                x,
+                spur_m: 0.0,
+                off: 0.0,
+            }];
+            for other in [1, 2] {
+                let closed = wiring.read(What::Cross(other, Some(0)), &spots);
+                let net = solved(wiring, other, x);
+                let same = closed == net || (closed - net).abs() < 1e-5;
+                assert!(same, "{closed} is not {net} at {x}");
+            }
+        }
+    }
+
+    #[test]
+    fn closed_forms_are_what_the_solver_finds() {
+        agrees(&ring());
+        let mut own_leg = ring();
+        own_leg.own_leg = [true, true];
+        agrees(&own_leg);
+        let mut bridged = ring();
+        bridged.bridge = Some((0.3, 0.7, 4.0));
+        agrees(&bridged);
+        bridged.own_leg = [true, false];
+        agrees(&bridged);
+        let mut joint = ring();
+        joint.joints = vec![(0, 0.41, 0.2), (2, 0.77, 1.5)];
+        agrees(&joint);
+        let mut open = ring();
+        open.joints = vec![(0, 0.41, f64::INFINITY)];
+        agrees(&open);
+        open.joints.push((1, 0.61, f64::INFINITY));
+        agrees(&open);
+    }
+
+    #[test]
+    fn a_bridge_lowers_all_ends() {
+        // 60 m ring 2.5/1.5, 4 m of cable between sockets at 0.3 and 0.7: 0.292/0.292/0.477, by
+        // the nodal solver of the fact sheet behind this project.
+        let mut bridged = ring();
+        bridged.bridge = Some((0.3, 0.7, 4.0));
+        assert!((bridged.read(What::End(0), &[]) - 0.292).abs() < 0.001);
+        assert!((bridged.read(What::End(2), &[]) - 0.477).abs() < 0.001);
     }
 }
