@@ -212,7 +212,7 @@ fn opens<'a>(series: &'a RingSeries, planned: &Wiring, ballot: &mut Ballot<'a>) 
         .filter(|c| series.is_open(What::End(*c)) == Some(true))
         .count();
     let any_open = series.seen.contains(&Seen::Open);
-    for core in 0..3 {
+    for (core, core_name) in CORE_NAMES.into_iter().enumerate() {
         if series.is_open(What::End(core)) == Some(false) {
             continue;
         }
@@ -221,7 +221,7 @@ fn opens<'a>(series: &'a RingSeries, planned: &Wiring, ballot: &mut Ballot<'a>) 
             let name = name.clone();
             ballot.add("one-core-open", prior("one-core-open") + fit, move || {
                 words(
-                    format!("{} open, likely {name}", CORE_NAMES[core]),
+                    format!("{core_name} open, likely {name}"),
                     "half the ring by taking the cable out at a middle point, read each half",
                 )
             });
@@ -346,7 +346,7 @@ fn joints<'a>(
 ) {
     let stretches = series.stretches();
     // The stretch common to all ends is taken out first: the other cores say what it is.
-    for core in 0..3 {
+    for (core, core_name) in CORE_NAMES.into_iter().enumerate() {
         let sizes: Vec<f64> = match series.ohm(What::End(core)) {
             Some(end) => {
                 let others: Vec<f64> = (0..3)
@@ -377,10 +377,7 @@ fn joints<'a>(
                 let (ohm, name) = (*ohm, name.clone());
                 ballot.add("high-joint", prior("high-joint") + fit, move || {
                     words(
-                        format!(
-                            "{}: a joint about {ohm:.2} Ω too high, likely {name}",
-                            CORE_NAMES[core]
-                        ),
+                        format!("{core_name}: a joint about {ohm:.2} Ω too high, likely {name}"),
                         "remake the terminals of that core from point to point, watch the end",
                     )
                 });
@@ -390,7 +387,7 @@ fn joints<'a>(
     // Terminals of one point alone: a branch of resistance in one core.
     let count = series.spots.len() as f64;
     for spot in 0..series.spots.len() {
-        for core in 0..3 {
+        for (core, core_name) in CORE_NAMES.into_iter().enumerate() {
             let touched: Vec<f64> = series
                 .what
                 .iter()
@@ -407,10 +404,7 @@ fn joints<'a>(
             let no = series.spots[spot].no;
             ballot.add("high-joint", prior("high-joint") - 1.5 + fit, move || {
                 words(
-                    format!(
-                        "about {over:.2} Ω too high at point {no} alone, {} terminal",
-                        CORE_NAMES[core]
-                    ),
+                    format!("about {over:.2} Ω too high at point {no} alone, {core_name} terminal"),
                     "press the probes again, then tighten that point's terminals",
                 )
             });
