@@ -178,7 +178,11 @@ impl Band {
     #[must_use]
     pub fn terminations(self, passed: usize) -> Self {
         let high = END_TERMINATIONS_OHM + PASSED_POINT_OHM * passed as f64;
-        self.widen(format!("terminations, {passed} points passed"), 0.0, high)
+        self.widen(
+            format!("terminations, {passed} points on the way"),
+            0.0,
+            high,
+        )
     }
 
     /// Instrument accuracy and resolution.

@@ -2,6 +2,7 @@
 
 mod cases;
 mod command;
+mod fault_bench;
 mod faults;
 mod jobs;
 mod oracle;

@@ -136,7 +136,10 @@ impl Answer {
         );
         object.insert("low".into(), number(self.low));
         object.insert("high".into(), number(self.high));
-        let sources: Vec<String> = self.sources.iter().map(ToString::to_string).collect();
+        let mut sources: Vec<String> = self.sources.iter().map(ToString::to_string).collect();
+        if sources.is_empty() {
+            sources.push("arithmetic on the figures given".into());
+        }
         object.insert("source".into(), sources.join("; ").into());
         object.insert(
             "source_checked".into(),
