@@ -6,4 +6,5 @@
 
 pub mod base;
 pub mod build;
+pub mod front;
 pub mod vosk_link;

@@ -20,7 +20,9 @@ use libloading::Library;
 #[derive(Debug, Clone, PartialEq, Eq, thiserror::Error)]
 pub enum LinkError {
     /// Nowhere to be found.
-    #[error("keypad only: libvosk.so was not found (run ./models-download.sh, or set HANDSFULL_LIBVOSK)")]
+    #[error(
+        "keypad only: libvosk.so was not found (run ./models-download.sh, or set HANDSFULL_LIBVOSK)"
+    )]
     Missing,
     /// Found, but it cannot be used here.
     #[error("keypad only: {} cannot be used: {reason}", path.display())]
@@ -219,7 +221,12 @@ mod tests {
         let all = places(Some("/no/such/lib.so".into()), None, None, None, None);
         assert_eq!(all, [PathBuf::from("/no/such/lib.so")]);
         let error = open_first(&all).err().expect("it does not exist");
-        assert!(error.to_string().starts_with("keypad only: /no/such/lib.so"), "{error}");
+        assert!(
+            error
+                .to_string()
+                .starts_with("keypad only: /no/such/lib.so"),
+            "{error}"
+        );
     }
 
     #[test]

@@ -53,7 +53,10 @@ pub fn build(
     let (mut automaton, missing) = raw(graph, ids, context)?;
     connect(&mut automaton).map_err(|e| automaton_error(context, &e))?;
     if automaton.num_states() == 0 {
-        return Err(automaton_error(context, &"nothing is left that can be said"));
+        return Err(automaton_error(
+            context,
+            &"nothing is left that can be said",
+        ));
     }
     if let (Some(cost), Some(id)) = (garbage, ids.get(GARBAGE)) {
         add_garbage(&mut automaton, id, cost).map_err(|e| automaton_error(context, &e))?;
@@ -227,7 +230,10 @@ mod tests {
             (&[("", 0.25, 1), ("ohms", 0.5, 4)], Some(0.75)),
             (&[], Some(0.0)),
         ]);
-        (graph, WordIds::new(["circuit", "ohms", "one", "open", "two"]))
+        (
+            graph,
+            WordIds::new(["circuit", "ohms", "one", "open", "two"]),
+        )
     }
 
     #[test]

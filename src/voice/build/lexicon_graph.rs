@@ -12,8 +12,7 @@ use rustfst::{
 };
 
 use super::{
-    Automaton, BuildError, GARBAGE, Pronunciations, WordIds, automaton_error,
-    check_pronunciations,
+    Automaton, BuildError, GARBAGE, Pronunciations, WordIds, automaton_error, check_pronunciations,
     phones::{Phone, PhoneTable, Position},
 };
 

@@ -11,11 +11,7 @@ pub mod phones;
 
 use std::collections::BTreeMap;
 
-use rustfst::{
-    fst_impls::VectorFst,
-    fst_traits::SerializableFst,
-    semirings::TropicalWeight,
-};
+use rustfst::{fst_impls::VectorFst, fst_traits::SerializableFst, semirings::TropicalWeight};
 
 use phones::{PhoneTable, Position};
 
@@ -174,7 +170,9 @@ mod tests {
         automaton.set_start(0).expect("state 0");
         let arc = Tr::new(7, 9, TropicalWeight::new(0.5), 1);
         automaton.add_tr(0, arc).expect("state 0");
-        automaton.set_final(1, TropicalWeight::one()).expect("state 1");
+        automaton
+            .set_final(1, TropicalWeight::one())
+            .expect("state 1");
         let bytes = to_bytes(&automaton, "test").expect("stored");
 
         let mut due = Vec::new();

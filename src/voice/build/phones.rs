@@ -97,7 +97,9 @@ pub enum PhoneTableError {
         text: String,
     },
     /// Numbers out of step.
-    #[error("line {line}: id or transition id is out of step (expected id {id}, transition {first})")]
+    #[error(
+        "line {line}: id or transition id is out of step (expected id {id}, transition {first})"
+    )]
     OutOfStep {
         /// From 1.
         line: usize,
@@ -266,7 +268,11 @@ mod tests {
         let phone = table.get("AA", Position::End).expect("in the table");
         assert_eq!((phone.stay(1), phone.enter(1)), (11, 12));
         assert_eq!(table.unused_transition(), 21);
-        assert!(table.word_boundaries().starts_with("1 nonword\n2 nonword\n3 begin\n"));
+        assert!(
+            table
+                .word_boundaries()
+                .starts_with("1 nonword\n2 nonword\n3 begin\n")
+        );
     }
 
     #[track_caller]
