@@ -7,4 +7,6 @@
 pub mod base;
 pub mod build;
 pub mod front;
+pub mod recogniser;
+pub mod source;
 pub mod vosk_link;
