@@ -7,6 +7,7 @@
 pub mod base;
 pub mod build;
 pub mod front;
+pub mod hearing;
 pub mod recogniser;
 pub mod source;
 pub mod vosk_link;

@@ -15,20 +15,20 @@ use std::{
 };
 
 use super::{
-    BuildError, GARBAGE, Pronunciations, WordIds, grammar_graph,
+    BuildError, Pronunciations, WordIds, grammar_graph,
     lexicon_graph::{self, Costs},
     to_bytes,
 };
 use crate::{
     speech::word_graph::{Arc, State, WordGraph},
-    voice::base::Base,
+    voice::{base::Base, build::phones::PhoneTable},
 };
 
 /// Raised whenever the bytes built from the same inputs change.
 const BUILDER: &str = "handsfull voice 1";
 
-/// The context that holds nothing but the garbage word: the measure of how well sound fits any
-/// speech at all.
+/// The context in which any sound may follow any other: the measure of how well an utterance fits
+/// what may be said.
 pub const ANYTHING: &str = "anything";
 
 /// Everything a voice is built from.
@@ -42,8 +42,6 @@ pub struct Recipe {
     pub contexts: Vec<(String, WordGraph)>,
     /// Costs of the word graph.
     pub costs: Costs,
-    /// Cost of the garbage word against a whole grammar; `None` leaves it out of the grammars.
-    pub garbage: Option<f32>,
 }
 
 /// Why a voice folder could not be made.
@@ -86,7 +84,7 @@ impl Recipe {
             part(bytes);
         }
         part(self.base.phones().word_boundaries().as_bytes());
-        part(format!("{:?} {:?}", self.costs, self.garbage).as_bytes());
+        part(format!("{:?}", self.costs).as_bytes());
         for (word, ways) in &self.words {
             part(format!("{word} {ways:?}").as_bytes());
         }
@@ -108,7 +106,7 @@ impl Recipe {
     /// Numbers of the words.
     #[must_use]
     pub fn ids(&self) -> WordIds {
-        WordIds::new(self.words.keys().map(String::as_str))
+        WordIds::of(&self.words, self.base.phones())
     }
 
     /// Builds the voice into `folder` unless it is there already.
@@ -166,10 +164,9 @@ impl Recipe {
         put("graph/disambig_tid.int", unused.as_bytes())?;
         let boundaries = table.word_boundaries();
         put("graph/phones/word_boundary.int", boundaries.as_bytes())?;
-        let anything = (ANYTHING.to_owned(), only_garbage());
+        let anything = (ANYTHING.to_owned(), any_sounds(table));
         for (name, graph) in self.contexts.iter().chain([&anything]) {
-            let garbage = self.garbage.filter(|_| name != ANYTHING);
-            let grammar = grammar_graph::build(graph, &ids, garbage, name)?;
+            let grammar = grammar_graph::build(graph, &ids, None, name)?;
             if !grammar.missing.is_empty() {
                 return Err(BuildError::Unpronounced {
                     words: grammar.missing,
@@ -180,9 +177,36 @@ impl Recipe {
             let context = folder.join("contexts").join(name);
             lay_out(&context, Path::new("../.."), &bytes)?;
         }
+        self.narrow_anything(&context_folder(folder, ANYTHING))?;
         put("built.txt", format!("{digest}\n").as_bytes())
     }
+
+    /// Gives that context settings of its own; in Kaldi's option files the last line wins.
+    fn narrow_anything(&self, context: &Path) -> Result<(), FolderError> {
+        let conf = context.join("conf");
+        fs::remove_file(&conf)
+            .or_else(|_| fs::remove_dir_all(&conf))
+            .map_err(|source| FolderError::Write {
+                path: conf.clone(),
+                source,
+            })?;
+        for (name, bytes) in self.base.files() {
+            match name.strip_prefix("conf/") {
+                Some("model.conf") => {
+                    let own = [bytes, b"\n", NARROW.as_bytes()].concat();
+                    put(&conf.join("model.conf"), &own)?;
+                }
+                Some(file) => put(&conf.join(file), bytes)?,
+                None => {}
+            }
+        }
+        Ok(())
+    }
 }
+
+/// Settings of the decoder where any sound may follow any other: only the best path matters, and a
+/// lattice of all the others would not fit into memory.
+const NARROW: &str = "--beam=9.0\n--lattice-beam=0.1\n--max-active=400\n--min-active=50\n";
 
 /// Where libvosk opens a context of a voice folder.
 #[must_use]
@@ -194,24 +218,25 @@ fn is_built(folder: &Path, digest: &str) -> bool {
     fs::read_to_string(folder.join("built.txt")).is_ok_and(|text| text.trim() == digest)
 }
 
-fn only_garbage() -> WordGraph {
-    let arc = Arc {
-        word: Some(GARBAGE.to_owned()),
-        cost: 0.0,
-        to: 1,
-    };
+/// Cost of each sound where any may follow any other. Without one, staying in a sound and entering
+/// it again would cost the same, and the lattice would hold every mixture of the two.
+const SOUND: f32 = 0.5;
+
+fn any_sounds(table: &PhoneTable) -> WordGraph {
+    let arcs = lexicon_graph::sounds(table)
+        .into_iter()
+        .map(|(word, _)| Arc {
+            word: Some(word),
+            cost: SOUND,
+            to: 0,
+        })
+        .collect();
     WordGraph {
         start: 0,
-        states: vec![
-            State {
-                arcs: vec![arc],
-                stop: None,
-            },
-            State {
-                arcs: Vec::new(),
-                stop: Some(0.0),
-            },
-        ],
+        states: vec![State {
+            arcs,
+            stop: Some(0.0),
+        }],
     }
 }
 

@@ -2,8 +2,8 @@
 //!
 //! libvosk composes it with a grammar as it decodes. A word is a chain of its phones; its label
 //! stands on the first arc, so that the grammar can refuse it before anything is spent on it.
-//! Between words, at the start and at the end a silence is possible. The garbage word is a loop
-//! over all phones and the filler. It promises arcs sorted by word, which the composition needs.
+//! Between words, at the start and at the end a silence is possible. Each sound is a word too. It
+//! promises arcs sorted by word, which the composition needs.
 
 use rustfst::{
     algorithms::tr_sort,
@@ -12,7 +12,7 @@ use rustfst::{
 };
 
 use super::{
-    Automaton, BuildError, GARBAGE, Pronunciations, WordIds, automaton_error, check_pronunciations,
+    Automaton, BuildError, Pronunciations, WordIds, automaton_error, check_pronunciations,
     phones::{Phone, PhoneTable, Position},
 };
 
@@ -21,21 +21,27 @@ use super::{
 pub struct Costs {
     /// How likely a silence is between two words (0 to 1).
     pub silence: f32,
-    /// Cost of each phone of the garbage word.
-    pub garbage_phone: f32,
-    /// Cost of each run of the filler in the garbage word.
-    pub garbage_filler: f32,
 }
 
 impl Default for Costs {
     fn default() -> Self {
         Self {
             silence: 0.5,
-            // Chosen by `handsfull voice measure`; see rejection in DEVELOPERS.md.
-            garbage_phone: 0.0,
-            garbage_filler: 0.0,
         }
     }
+}
+
+/// Every sound as a word of its own, in brackets: `[AA]`, ..., `[NSN]`. A grammar of all of them in
+/// any order says how well an utterance is explained by any sounds at all.
+#[must_use]
+pub fn sounds(table: &PhoneTable) -> Vec<(String, Phone)> {
+    let phone = |name: &str| table.get(name, Position::Singleton);
+    table
+        .names()
+        .iter()
+        .filter_map(|name| Some((format!("[{name}]"), phone(name)?)))
+        .chain([("[NSN]".to_owned(), table.filler())])
+        .collect()
 }
 
 struct Builder {
@@ -106,7 +112,10 @@ pub fn build(
             b.arc(at, 0, 0, 0.0, end);
         }
     }
-    garbage(&mut b, hub, end, id_of(ids, GARBAGE)?, table, costs)?;
+    for (word, phone) in sounds(table) {
+        let at = b.phone(hub, phone, id_of(ids, &word)?, 0.0);
+        b.arc(at, 0, 0, 0.0, end);
+    }
     let fail = |error: &dyn ToString| automaton_error("the word list", &error.to_string());
     b.automaton.set_start(start as _).map_err(|e| fail(&e))?;
     b.automaton
@@ -114,40 +123,6 @@ pub fn build(
         .map_err(|e| fail(&e))?;
     tr_sort(&mut b.automaton, OLabelCompare {});
     Ok(b.automaton)
-}
-
-/// Begin, any number inside, end: the positions real words have, so that word times stay true.
-fn garbage(
-    b: &mut Builder,
-    hub: usize,
-    end: usize,
-    id: u32,
-    table: &PhoneTable,
-    costs: Costs,
-) -> Result<(), BuildError> {
-    let (entry, inside, left) = (b.state(), b.state(), b.state());
-    b.arc(hub, 0, id, 0.0, entry);
-    for name in table.names() {
-        let parts = [
-            (entry, Position::Begin, inside),
-            (inside, Position::Internal, inside),
-            (inside, Position::End, left),
-            (entry, Position::Singleton, left),
-        ];
-        for (from, position, to) in parts {
-            let phone = phone_of(table, GARBAGE, name, position)?;
-            let at = b.phone(from, phone, 0, costs.garbage_phone);
-            b.arc(at, 0, 0, 0.0, to);
-        }
-    }
-    let filler = b.phone(entry, table.filler(), 0, costs.garbage_filler);
-    b.arc(filler, 0, 0, 0.0, left);
-    // Talk is made of many such words, with or without silences between.
-    b.arc(left, 0, 0, 0.0, entry);
-    let silence = b.phone(left, table.silence(), 0, 0.0);
-    b.arc(silence, 0, 0, 0.0, entry);
-    b.arc(left, 0, 0, 0.0, end);
-    Ok(())
 }
 
 fn id_of(ids: &WordIds, word: &str) -> Result<u32, BuildError> {
@@ -193,7 +168,7 @@ mod tests {
     #[test]
     fn arcs_are_sorted_by_word_and_a_word_stands_on_its_first_arc() {
         let words = words(&[("two", "T UW"), ("oh", "OW"), ("two", "T UW")]);
-        let ids = WordIds::new(words.keys().map(String::as_str));
+        let ids = WordIds::of(&words, &table());
         let graph = build(&words, &ids, &table(), Costs::default()).expect("built");
         let mut labelled = 0;
         for state in 0..graph.num_states() {
@@ -202,14 +177,14 @@ mod tests {
             assert!(labels.is_sorted(), "state {state}");
             labelled += labels.iter().filter(|l| **l != 0).count();
         }
-        // "two" is given twice the same way and counts once; then "oh" and the garbage word.
-        assert_eq!(labelled, 3);
+        // "two" is given twice the same way and counts once; then "oh", and the 40 sounds.
+        assert_eq!(labelled, 2 + 40);
     }
 
     #[test]
     fn a_pronunciation_with_a_sound_nobody_makes_is_named() {
         let words = words(&[("ohm", "OW QQ")]);
-        let ids = WordIds::new(["ohm"]);
+        let ids = WordIds::of(&words, &table());
         let error = build(&words, &ids, &table(), Costs::default()).expect_err("QQ");
         assert_eq!(
             error.to_string(),

@@ -18,8 +18,8 @@ use phones::{PhoneTable, Position};
 /// A weighted automaton as OpenFst's `vector`/`standard` type.
 pub type Automaton = VectorFst<TropicalWeight>;
 
-/// The garbage word: speech or noise that no grammar covers. It is in every voice, and in a
-/// grammar only as the alternative to all of it.
+/// The garbage word of general models: speech or noise that no grammar covers. Ours has none: it
+/// tells such sound by how much better sounds without any grammar explain it (see `hearing`).
 pub const GARBAGE: &str = "[unk]";
 
 /// Words with their pronunciations, each a list of CMUdict phones without stress.
@@ -61,7 +61,7 @@ pub enum BuildError {
 }
 
 /// Numbers of the words, as `words.txt` gives them: 0 is no word, then the words in order, then
-/// the garbage word.
+/// the sounds.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct WordIds(BTreeMap<String, u32>);
 
@@ -74,9 +74,15 @@ impl WordIds {
             let next = ids.len() as u32 + 1;
             ids.entry(word.to_owned()).or_insert(next);
         }
-        let next = ids.len() as u32 + 1;
-        ids.entry(GARBAGE.to_owned()).or_insert(next);
         Self(ids)
+    }
+
+    /// Numbers for the words and the sounds of a voice.
+    #[must_use]
+    pub fn of(words: &Pronunciations, table: &PhoneTable) -> Self {
+        let sounds = lexicon_graph::sounds(table);
+        let sounds = sounds.iter().map(|(word, _)| word.as_str());
+        Self::new(words.keys().map(String::as_str).chain(sounds))
     }
 
     /// Reads a `words.txt`; lines that are not `WORD NUMBER` are passed over.
@@ -208,7 +214,7 @@ mod tests {
     #[test]
     fn words_keep_their_numbers_through_words_txt() {
         let ids = WordIds::new(["zero", "one"]);
-        assert_eq!(ids.text(), "<eps> 0\nzero 1\none 2\n[unk] 3\n");
+        assert_eq!(ids.text(), "<eps> 0\nzero 1\none 2\n");
         assert_eq!(WordIds::read(&ids.text()), ids);
     }
 }
