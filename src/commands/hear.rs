@@ -4,6 +4,9 @@
 //! said, whether or not they exist.
 
 pub mod json;
+mod recordings;
+
+use std::path::PathBuf;
 
 use clap::Args as ClapArgs;
 
@@ -19,6 +22,12 @@ pub struct Args {
     /// Words to be understood as if they had been heard; may be given several times
     #[arg(long, value_name = "WORDS")]
     text: Vec<String>,
+    /// A built voice (see `voice build --out` and `voice adopt`) in place of the embedded one
+    #[arg(long, value_name = "DIR")]
+    voice: Option<PathBuf>,
+    /// Recordings (WAV)
+    #[arg(value_name = "FILE")]
+    files: Vec<PathBuf>,
 }
 
 /// Runs the command.
@@ -27,14 +36,17 @@ pub struct Args {
 /// A [`Failure`] with its exit code.
 pub fn run(args: &Args) -> Result<(), Failure> {
     let context = context(&args.context)?;
-    if args.text.is_empty() {
+    if args.text.is_empty() && args.files.is_empty() {
         return Err(Failure::new(Kind::Usage, "nothing to hear")
-            .hint("give --text \"zero point five eight ohms\""));
+            .hint("give recordings (WAV), or --text \"zero point five eight ohms\""));
     }
     for text in &args.text {
         println!("{}", json::line(&[], &heard(context, text)));
     }
-    Ok(())
+    if args.files.is_empty() {
+        return Ok(());
+    }
+    recordings::hear(context, args.voice.as_deref(), &args.files)
 }
 
 /// A context by its name.

@@ -8,6 +8,7 @@ pub mod base;
 pub mod build;
 pub mod front;
 pub mod hearing;
+pub mod ready;
 pub mod recogniser;
 pub mod source;
 pub mod vosk_link;

@@ -14,6 +14,7 @@
 //! | `test` `stage` | `test`, `stage` commands | `r1r2`, `insulation` |
 //! | `alternatives` | ambiguous | the same keys, with `margin` (0: as likely as the best) |
 //! | `why` | nothing | the reason in words |
+//! | `more` | recordings | what else was heard in it, in its order, with the same keys |
 
 use serde_json::{Map, Value, json};
 
@@ -27,6 +28,21 @@ type Object = Map<String, Value>;
 /// The object of one utterance. `before` (such as the file's name) comes first.
 #[must_use]
 pub fn line(before: &[(&str, &str)], heard: &Heard) -> String {
+    Value::Object(utterance(before, heard)).to_string()
+}
+
+/// As [`line`], with what else a recording held.
+#[must_use]
+pub fn line_with_more(before: &[(&str, &str)], heard: &Heard, more: &[Heard]) -> String {
+    let mut object = utterance(before, heard);
+    if !more.is_empty() {
+        let more = more.iter().map(|h| Value::Object(utterance(&[], h)));
+        object.insert("more".into(), more.collect());
+    }
+    Value::Object(object).to_string()
+}
+
+fn utterance(before: &[(&str, &str)], heard: &Heard) -> Object {
     let mut object = Object::new();
     for (key, value) in before {
         put(&mut object, key, *value);
@@ -40,7 +56,7 @@ pub fn line(before: &[(&str, &str)], heard: &Heard) -> String {
             .collect();
         object.insert("alternatives".into(), Value::Array(alternatives));
     }
-    Value::Object(object).to_string()
+    object
 }
 
 fn put(object: &mut Object, key: &str, value: impl Into<Value>) {

@@ -220,7 +220,7 @@ fn is_built(folder: &Path, digest: &str) -> bool {
 
 /// Cost of each sound where any may follow any other. Without one, staying in a sound and entering
 /// it again would cost the same, and the lattice would hold every mixture of the two.
-const SOUND: f32 = 0.5;
+pub const SOUND: f32 = 0.5;
 
 fn any_sounds(table: &PhoneTable) -> WordGraph {
     let arcs = lexicon_graph::sounds(table)

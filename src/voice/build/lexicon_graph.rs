@@ -25,9 +25,7 @@ pub struct Costs {
 
 impl Default for Costs {
     fn default() -> Self {
-        Self {
-            silence: 0.5,
-        }
+        Self { silence: 0.5 }
     }
 }
 
