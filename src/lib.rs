@@ -11,6 +11,7 @@ pub mod commands;
 pub mod domain;
 pub mod journal;
 pub mod plan;
+pub mod rehearsal;
 pub mod report;
 pub mod session;
 pub mod speech;
