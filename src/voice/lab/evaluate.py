@@ -29,6 +29,7 @@ from augment import noise_files, unit
 from lexicon import ALIASES, DIGITS, NATO
 
 READINGS_EACH = 60
+COSTS = (-4., -2., 0., 2., 4., 6., 8., 12.)  # prices of [unk] tried by --reject
 
 
 def rows(d):
@@ -159,7 +160,7 @@ def measure(bases, only, conds, misses):
     shutil.rmtree(work)
 
 
-def reject(base, loop_cost):
+def reject(base, loop_cost, costs=None):
     """One line a price: readings lost (clean, n10) and false accepts in talk, noise kept out, all noise."""
     import vosk
     sets = all_sets()
@@ -170,7 +171,7 @@ def reject(base, loop_cost):
     kept_out = list(noises)
     minutes = lambda xs: sum(len(x) + 12800 for x in xs) / 960000
     print(f"{base}: talk {len(talk)} clips {minutes(talk):.1f} min, noise kept out {len(kept_out)} clips {minutes(kept_out):.1f} min")
-    for cost in (-4., -2., 0., 2., 4., 6., 8., 12.):
+    for cost in (costs or COSTS):
         m = vosk.Model(str(graphs.model_folder(base, f"{work}/{cost}", "readings", unk=cost, loop_cost=loop_cost)))
         row = []
         for cond in ("clean", "n10"):
@@ -198,6 +199,7 @@ if __name__ == "__main__":
     ap.add_argument("--conds", default="clean")
     ap.add_argument("--misses", action="store_true")
     ap.add_argument("--reject", action="store_true")
+    ap.add_argument("--costs", default="", help="prices of [unk], comma between")
     ap.add_argument("--loop-cost", type=float, help="add a loop of phones to [unk] at this price a phone")
     a = ap.parse_args()
     if a.bases == ["speak"]:
@@ -207,6 +209,6 @@ if __name__ == "__main__":
         vosk.SetLogLevel(-100)
         if a.reject:
             for b in a.bases:
-                reject(b, a.loop_cost)
+                reject(b, a.loop_cost, [float(c) for c in a.costs.split(",") if c])
         else:
             measure(a.bases, [s for s in a.sets.split(",") if s], a.conds.split(","), a.misses)
