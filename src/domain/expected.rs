@@ -9,9 +9,8 @@ use super::{
     expect::{Contribution, Expected, Source},
     insulation::{self, Voltage},
     kept::Kept,
-    layout,
     plan::{Circuit, CircuitKind, Conductor, InstrumentRange, Job, Run},
-    quantity::{Celsius, MilliohmPerMetre},
+    quantity::Celsius,
     range::{self, Band},
     reading::{Bound, Unit},
     sequence,
@@ -22,6 +21,7 @@ use rust_decimal::Decimal;
 
 pub(crate) mod live;
 
+mod radial;
 mod ring;
 
 /// What the test of `target` should read.
@@ -40,7 +40,7 @@ pub fn expected(job: &Job, target: &Target, kept: &Kept) -> Expected {
             Some(circuit) if circuit.kind == CircuitKind::Ring => {
                 ring::expected(job, target, circuit, kept)
             }
-            Some(circuit) => radial(job, target, circuit),
+            Some(circuit) => radial::expected(job, target, circuit, kept),
         },
         TestKind::RingR1
         | TestKind::RingRn
@@ -218,68 +218,6 @@ pub(crate) fn tested_cores(
         TestKind::R2 => vec![cpc],
         _ => vec![circuit.cable.line, cpc],
     })
-}
-
-fn radial(job: &Job, target: &Target, circuit: &Circuit) -> Expected {
-    let cores = match tested_cores(circuit, target.test) {
-        Ok(cores) => cores,
-        Err(reason) => return unknown(Unit::Ohm, reason),
-    };
-    let mut rate = 0.0;
-    let mut at_20 = 0.0;
-    for core in &cores {
-        match (rate_at_ambient(job, *core), conductor::rate(*core)) {
-            (Ok(warm), Ok(table)) => {
-                rate += warm;
-                at_20 += MilliohmPerMetre::milliohm_per_m(table);
-            }
-            (Err(reason), _) => return unknown(Unit::Ohm, reason),
-            (_, Err(reason)) => return unknown(Unit::Ohm, reason.to_string()),
-        }
-    }
-    let spots = layout::spots(circuit);
-    // Without a point the furthest one is meant: that is what the schedule records.
-    let spot = match target.point {
-        Some(no) => spots.iter().find(|spot| spot.no == no),
-        None => spots
-            .iter()
-            .max_by(|a, b| a.path_m().total_cmp(&b.path_m())),
-    };
-    let Some(spot) = spot else {
-        return unknown(Unit::Ohm, "no such point in the plan");
-    };
-    let instrument = range::continuity_of(job);
-    let words: Vec<String> = cores.iter().map(|core| conductor::words(*core)).collect();
-    let mut band = Band::at(
-        spot.path_m() * rate / 1000.0,
-        format!(
-            "{:.1} m x {at_20:.2} mΩ/m at 20 °C ({})",
-            spot.path_m(),
-            words.join(" + ")
-        ),
-    )
-    .note(format!("at {} °C: {rate:.2} mΩ/m", job.ambient_c))
-    .under_maximum()
-    .length(circuit.length.basis);
-    if spot.off_m > 0.0 {
-        let off = spot.off_m * rate / 1000.0;
-        band = band.widen(format!("position ±{:.1} m", spot.off_m), off, off);
-    }
-    band = band.terminations(spot.passed);
-    if circuit.kind == CircuitKind::Lighting && target.test == TestKind::R1R2 {
-        let line = rate_at_ambient(job, circuit.cable.line).unwrap_or(0.0);
-        let drop = range::SWITCH_DROP_M * 2.0 * line / 1000.0;
-        band = band.widen(
-            format!("switch drop of up to {} m", range::SWITCH_DROP_M),
-            0.0,
-            drop,
-        );
-    }
-    let mut sources: Vec<Source> = cores.iter().map(|core| conductor::source(*core)).collect();
-    sources.dedup();
-    sources.push(temperature::rule_source(job.rules.temperature));
-
-    from_band(band.instrument(&instrument), &instrument, sources)
 }
 
 fn insulating(job: &Job, target: &Target, circuit: Option<&Circuit>, kept: &Kept) -> Expected {

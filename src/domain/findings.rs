@@ -197,8 +197,8 @@ fn of_radial(
             seen: shown,
             newest,
             switch_ohm: if lighting {
-                // Half of the allowance for a switch drop, and as much again as its spread.
-                0.5 * range::SWITCH_DROP_M * rates[0] / 1000.0
+                // Out to the switch and back, half of the allowance on average, spread as widely.
+                range::SWITCH_DROP_M * rates[0] / 1000.0
             } else {
                 0.0
             },

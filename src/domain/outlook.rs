@@ -308,7 +308,7 @@ fn voltage_drop(
                 show(found.percent, 1, Round::Up),
                 found.how
             ),
-            check: "a guide value: safe functioning of the equipment governs".into(),
+            check: "a guide value: what the equipment needs governs".into(),
             against: false,
             sources: vec![source],
         });

@@ -159,11 +159,11 @@ pub enum Round {
     Up,
 }
 
-/// A figure as it is shown: rounded to `decimals` places. Dust of binary arithmetic (1e-9 of the
+/// A figure as it is shown: rounded to `decimals` places. Dust of binary arithmetic (1e-12 of the
 /// value) does not move it a step. Beyond the range of a decimal it is the largest one.
 #[must_use]
 pub fn show(value: f64, decimals: u32, round: Round) -> Decimal {
-    let dust = value.abs() * 1e-9;
+    let dust = value.abs() * 1e-12;
     let (value, strategy) = match round {
         Round::Nearest => (value, RoundingStrategy::MidpointAwayFromZero),
         Round::Down => (value + dust, RoundingStrategy::ToNegativeInfinity),

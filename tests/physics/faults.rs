@@ -357,6 +357,50 @@ const HEALTHY: &[(&str, Case)] = &[
         let b = basis(d);
         ring_case(d, b, 1.0, None, whole, CROSSED, 0.0, nothing)
     }),
+    ("lighting with switch drops", |d| {
+        let b = basis(d);
+        let ground = ground(d, CircuitKind::Lighting, b);
+        let meter = Meter::new(d);
+        let real = Copper::new(d, rates(ground.pair));
+        let metres = lengths(d, &ground, 1.0);
+        let mut building = Building::new(d, real, &metres, &[]);
+        for place in 1..=metres.len() {
+            let drop = d.uniform(0.0, 6.0);
+            building.switch(real, place, drop);
+        }
+        let readings = radial(d, &meter, &building, TestKind::R1R2);
+        read_all(&jobs::job(vec![ground.circuit]), &mut Kept::new(), readings)
+    }),
+    ("radial on a cold day", |d| {
+        let b = basis(d);
+        let ground = ground(d, CircuitKind::Radial, b);
+        let meter = Meter::new(d);
+        // 2 °C: 0.928 of the values at 20 °C.
+        let real = Copper::new(d, rates(ground.pair).map(|rate| 0.928 * rate));
+        let metres = lengths(d, &ground, 1.0);
+        let building = Building::new(d, real, &metres, &[]);
+        let readings = radial(d, &meter, &building, TestKind::R1R2);
+        let mut job = jobs::job(vec![ground.circuit]);
+        job.ambient_c = 2.0;
+        read_all(&job, &mut Kept::new(), readings)
+    }),
+    ("ring with a planned spur", |d| {
+        let b = basis(d);
+        let mut ground = ground(d, CircuitKind::Ring, b);
+        let meter = Meter::new(d);
+        let real = Copper::new(d, rates(ground.pair));
+        let metres = lengths(d, &ground, 1.0);
+        let mut building = Building::new(d, real, &metres, &[]);
+        for (point, at) in ground.circuit.points.iter_mut().zip(&ground.stated) {
+            point.at_m = Some(*at);
+        }
+        let place = 1 + d.index(ground.circuit.points.len());
+        let spur = d.uniform(2.0, 15.0);
+        ground.circuit.points[place - 1].spur_m = Some(spur);
+        let ends = building.branch(real, place, spur * d.uniform(0.98, 1.02));
+        let readings = ring(d, &meter, &building, CROSSED, None, Some((place, ends)));
+        read_all(&jobs::job(vec![ground.circuit]), &mut Kept::new(), readings)
+    }),
     ("insulation", |d| {
         let (a, b, c) = (good(d), good(d), good(d));
         insulating(d, a, b, c)

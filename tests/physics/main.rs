@@ -7,4 +7,5 @@ mod faults;
 mod jobs;
 mod oracle;
 mod properties;
+mod ranges;
 mod simulate;

@@ -169,6 +169,14 @@ impl Building {
         })
     }
 
+    /// A switch in the line of a place, some metres away: its terminal is beyond the drop.
+    pub fn switch(&mut self, copper: Copper, place: usize, metres: f64) {
+        let lamp = self.net.node();
+        let ohm = 2.0 * metres * copper.0[0];
+        self.net.join(self.terminals[0][place], lamp, ohm);
+        self.terminals[0][place] = lamp;
+    }
+
     /// A cable between two places.
     pub fn bridge(&mut self, copper: Copper, from: usize, to: usize, metres: f64) {
         for core in 0..3 {

@@ -487,7 +487,7 @@ impl DropArgs {
         .with("limit_percent", guide)
         .with("limit_v", nominal * guide / 100.0)
         .verdict("verdict", "guide value", percent <= guide)
-        .line("a guide value: safe functioning of the equipment governs")
+        .line("a guide value: what the equipment needs governs")
         .source(source)
         .source(self.warmth.source()))
     }

@@ -19,7 +19,7 @@ pub(crate) fn prior(code: &str) -> f64 {
         "parallel-path" => 0.004,
         "spur" => 0.004,
         "own-leg-link" => 0.004,
-        "one-core-open" => 0.004,
+        "one-core-open" => 0.012,
         "cut-cable" => 0.001,
         "bridge" => 0.003,
         "reversed" => 0.004,

@@ -8,7 +8,22 @@ use crate::domain::findings::{
 };
 
 pub(super) fn opens<'a>(series: &'a RingSeries, planned: &Wiring, ballot: &mut Ballot<'a>) {
-    let stretches = series.stretches();
+    // Ends alone say that a core is open, not where; only cross readings tell places apart.
+    let placed = series.what.iter().any(|w| matches!(w, What::Cross(..)));
+    let stretches: Vec<(f64, String)> = series
+        .stretches()
+        .into_iter()
+        .map(|(x, name)| {
+            (
+                x,
+                if placed {
+                    format!(", likely {name}")
+                } else {
+                    String::new()
+                },
+            )
+        })
+        .collect();
     let places = stretches.len() as f64;
     let broken = |cuts: &[(usize, f64)]| {
         let mut wiring = planned.clone();
@@ -30,7 +45,7 @@ pub(super) fn opens<'a>(series: &'a RingSeries, planned: &Wiring, ballot: &mut B
             let name = name.clone();
             ballot.add("one-core-open", prior("one-core-open") + fit, move || {
                 words(
-                    format!("{core_name} open, likely {name}"),
+                    format!("{core_name} open{name}"),
                     "half the ring by taking the cable out at a middle point, read each half",
                 )
             });
@@ -45,7 +60,7 @@ pub(super) fn opens<'a>(series: &'a RingSeries, planned: &Wiring, ballot: &mut B
             break;
         }
         let fit = broken(&[(0, *x), (1, *x), (2, *x)]) - places.ln();
-        let text = format!("cable cut {name}");
+        let text = format!("cable cut or not joined{name}");
         ballot.add("cut-cable", prior("cut-cable") + 1.0 + fit, move || {
             words(
                 text.clone(),
@@ -60,7 +75,10 @@ pub(super) fn opens<'a>(series: &'a RingSeries, planned: &Wiring, ballot: &mut B
         }
         for (x, name) in &stretches {
             let fit = broken(&[(a, *x), (b, *x)]) - (3.0 * places).ln();
-            let text = format!("{} and {} crossed {name}", CORE_NAMES[a], CORE_NAMES[b]);
+            let text = format!(
+                "{} and {} crossed in one cable{name}",
+                CORE_NAMES[a], CORE_NAMES[b]
+            );
             ballot.add("reversed", prior("reversed") + fit, move || {
                 words(
                     text.clone(),

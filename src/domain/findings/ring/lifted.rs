@@ -20,6 +20,7 @@ pub(super) fn joints<'a>(
     ballot: &mut Ballot<'a>,
 ) {
     let stretches = series.stretches();
+    let placed = series.what.iter().any(|w| matches!(w, What::Cross(..)));
     // The stretch common to all ends is taken out first: the other cores say what it is.
     for (core, core_name) in CORE_NAMES.into_iter().enumerate() {
         let sizes: Vec<f64> = match series.ohm(What::End(core)) {
@@ -50,9 +51,14 @@ pub(super) fn joints<'a>(
                 let penalty = (3.0 * stretches.len() as f64 * 12.0).ln();
                 let fit = series.fit(&wiring, true) - penalty;
                 let (ohm, name) = (*ohm, name.clone());
+                let place = if placed {
+                    format!(", likely {name}")
+                } else {
+                    String::new()
+                };
                 ballot.add("high-joint", prior("high-joint") + fit, move || {
                     words(
-                        format!("{core_name}: a joint about {ohm:.2} Ω too high, likely {name}"),
+                        format!("{core_name}: a joint about {ohm:.2} Ω too high{place}"),
                         "remake the terminals of that core from point to point, watch the end",
                     )
                 });
