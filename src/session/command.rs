@@ -57,6 +57,8 @@ impl State {
             Control::LinkIn => self.link_in(out),
             Control::LinkOut => self.link_out(out),
             Control::DigitByDigit => self.start_digits(out),
+            // Taken where they are asked for, before it comes to commands.
+            Control::Digits(_) => self.refuse("No figure is asked for digit by digit.", out),
             Control::Stop => match self.top() {
                 Prompt::StopAsk => out.push(Effect::Show),
                 _ => self.push(Prompt::StopAsk, out),
@@ -250,7 +252,7 @@ impl State {
                 ask.by_digit = true;
                 let target = ask.target.clone();
                 self.drafts.remove(&target);
-                self.note("Say one digit at a time, then done.");
+                self.note("Say one digit at a time, then affirm.");
                 out.push(Effect::Show);
                 out.push(Effect::Listen(self.context()));
                 let text = self.notice.clone();

@@ -123,7 +123,7 @@ impl State {
             }
             _ => return false,
         };
-        self.note("Say the next digit, point, or done.");
+        self.note("Say the next digit, point, or affirm.");
         for digit in digits.chars() {
             let key = match digit {
                 '.' => Key::Point,

@@ -71,7 +71,7 @@ pub(super) fn context_of(prompt: &Prompt) -> Context {
             DeadStep::Number => Context::All,
             _ => Context::Gate,
         },
-        Prompt::Ask(ask) if ask.by_digit => Context::All,
+        Prompt::Ask(ask) if ask.by_digit => Context::Digits,
         Prompt::Ask(ask) => match ask.target.test.unit() {
             None => Context::Tick,
             Some(Unit::Ohm) => Context::Ohms,
@@ -342,6 +342,7 @@ pub(super) fn control_text(control: &Control) -> String {
             format!("correction {}", super::entry::meaning_text(inner))
         }
         Control::Correction(None) => "correction".into(),
+        Control::Digits(digits) => digits.clone(),
         plain => plain.word().replace('-', " "),
     }
 }
