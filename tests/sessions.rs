@@ -2,5 +2,9 @@
 
 #[path = "sessions/bench.rs"]
 mod bench;
+#[path = "sessions/chance.rs"]
+mod chance;
 #[path = "sessions/days.rs"]
 mod days;
+#[path = "sessions/noise.rs"]
+mod noise;

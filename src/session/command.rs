@@ -519,7 +519,7 @@ impl State {
         if self.stack.iter().any(|p| matches!(p, Prompt::Standby)) {
             out.push(Effect::Pause(false));
         }
-        self.passed.retain(|t| *t != target);
+        self.passed.retain(|(t, _)| *t != target);
         self.called = Some(target);
         self.advance(out);
     }

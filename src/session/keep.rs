@@ -145,7 +145,7 @@ impl State {
 
     fn done_with(&mut self, target: &Target) {
         self.drafts.remove(target);
-        self.passed.retain(|t| t != target);
+        self.passed.retain(|(t, _)| t != target);
         if self.called.as_ref() == Some(target) {
             self.called = None;
         }
@@ -169,7 +169,7 @@ impl State {
         ));
         for target in again {
             // It is not the next thing to do: the fault has to be put right first.
-            self.pass_over(target.clone());
+            self.pass_over(target.clone(), true);
             self.queue(Record::Repeat { target, because });
         }
     }

@@ -127,8 +127,9 @@ pub struct State {
     pub(super) here: Here,
     /// The test called by name; done before the next in order.
     pub(super) called: Option<Target>,
-    /// Tests passed over in this session, the longest ago first: they come last.
-    pub(super) passed: Vec<Target>,
+    /// Tests passed over in this session, the longest ago first; true: behind all others, false:
+    /// behind the others of their stage.
+    pub(super) passed: Vec<(Target, bool)>,
     /// Works the tester said are still in: asked again later, not at every step.
     pub(super) left_in: BTreeSet<Work>,
     /// Circuits that may hold a charge from an insulation test.
