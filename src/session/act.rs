@@ -81,6 +81,14 @@ impl State {
         }
     }
 
+    /// Hearings in a row that were not right, at the reading in hand.
+    fn misses(&self) -> u8 {
+        match self.stack.first() {
+            Some(Prompt::Ask(ask)) => ask.misses,
+            _ => 0,
+        }
+    }
+
     fn in_trouble(&self) -> bool {
         self.stack.iter().any(|p| matches!(p, Prompt::Trouble(_)))
     }
@@ -187,7 +195,12 @@ impl State {
                     }
                     out.push(Effect::Show);
                     out.push(Effect::Listen(self.context()));
-                    let text = self.notice.clone();
+                    let another = self.misses() >= 2;
+                    let text = if another {
+                        super::aloud::ANOTHER_WAY.into()
+                    } else {
+                        super::aloud::prompt(self)
+                    };
                     self.say(text, out);
                 } else {
                     self.pop_all();
@@ -297,7 +310,7 @@ impl State {
         self.note("Measure again. The old value is not kept.");
         out.push(Effect::Show);
         out.push(Effect::Listen(self.context()));
-        let text = super::utter::prompt(self);
+        let text = super::aloud::prompt(self);
         self.say(text, out);
     }
 

@@ -207,9 +207,7 @@ impl State {
         match self.stack.last_mut() {
             Some(Prompt::Gate(gate)) if gate.page + 1 < gate.pages.len() => {
                 gate.page += 1;
-                let text = gate.pages[gate.page].join(" ");
                 out.push(Effect::Show);
-                self.say(text, out);
             }
             Some(Prompt::Gate(_)) => self.refuse("Acknowledge first: enter, or say done.", out),
             Some(Prompt::Page(page)) if page.page + 1 < page.pages.len() => {
@@ -255,8 +253,7 @@ impl State {
                 self.note("Say one digit at a time, then affirm.");
                 out.push(Effect::Show);
                 out.push(Effect::Listen(self.context()));
-                let text = self.notice.clone();
-                self.say(text, out);
+                self.say(super::aloud::BY_DIGIT.into(), out);
             }
             _ => self.refuse("No figure is asked for here.", out),
         }

@@ -165,10 +165,12 @@ impl State {
     }
 
     /// Stages of circuits that can be closed now and are not yet.
-    fn closable(&self) -> Option<Vec<Group>> {
+    fn closable(&mut self) -> Option<Vec<Group>> {
         // A stage closes when its last test is in and its last work out: it is enough to look at
-        // the place where the tester has just been, and everywhere when a session begins.
+        // the place where the tester has just been, and everywhere when a work came out or a
+        // session begins.
         let last = self.trail.last().map(|t| (t.board.clone(), t.circuit));
+        let last = last.filter(|_| !std::mem::take(&mut self.look_everywhere));
         let mut groups: Vec<Group> = self
             .setup
             .required()
@@ -188,22 +190,13 @@ impl State {
     fn may_close(&self, at: &Group) -> bool {
         let (_, board, circuit) = at;
         let open = self.open().any(|target| group(target) == *at);
-        let works = self.standing.works_in.iter().any(|work| {
-            (&work.board, work.circuit) == (board, *circuit) && !self.needed_later(at, work)
-        });
+        let here = |work: &Work| (&work.board, work.circuit) == (board, *circuit);
+        let works = self.standing.works_in.iter().any(here);
         let charged = match (board, circuit) {
             (Some(board), Some(circuit)) => self.charged.contains(&(board.clone(), *circuit)),
             _ => false,
         };
         !open && !works && !charged
-    }
-
-    /// A work that stays in for the next stage at the same place (loads out, for one).
-    fn needed_later(&self, at: &Group, work: &Work) -> bool {
-        self.setup.needing(work).any(|target| {
-            let (stage, board, circuit) = group(target);
-            stage != at.0 && (&board, circuit) == (&at.1, at.2) && self.is_open(target)
-        })
     }
 
     /// Closing up, board by board, once the dead tests are through; `None` when all is closed.

@@ -135,6 +135,7 @@ impl State {
             }
             Record::WorkOut { work, .. } => {
                 self.left_in.remove(work);
+                self.look_everywhere = true;
                 self.note(format!("Off the list: {}.", work.kind.words()));
             }
             Record::Incident { .. } | Record::Note { .. } => return false,

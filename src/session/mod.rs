@@ -13,6 +13,7 @@
 //! terminals and clocks: time comes with events.
 
 mod act;
+pub mod aloud;
 mod command;
 mod dead;
 pub mod effect;

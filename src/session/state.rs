@@ -17,11 +17,12 @@ use crate::domain::{
 };
 
 use super::{
+    aloud,
     effect::{Effect, Tone},
     event::{Event, StopCause},
     prompt::Prompt,
     settings::Settings,
-    trade, utter,
+    trade,
 };
 
 /// What a session is given and never changes.
@@ -145,6 +146,8 @@ pub struct State {
     pub(super) awaiting: bool,
     /// The step of the work changes once the last pending record is kept.
     pub(super) move_on: bool,
+    /// A work came out: stages may close elsewhere than where the tester is.
+    pub(super) look_everywhere: bool,
     /// Events that came while waiting for the journal.
     pub(super) held: VecDeque<Event>,
     pub(super) ear: EarState,
@@ -195,6 +198,7 @@ pub fn begin(setup: Setup, standing: Standing) -> (State, Vec<Effect>) {
         pending: VecDeque::new(),
         awaiting: false,
         move_on: false,
+        look_everywhere: false,
         held: VecDeque::new(),
         ear,
         level: 0,
@@ -393,7 +397,7 @@ impl State {
     fn shown(&mut self, out: &mut Vec<Effect>) {
         out.push(Effect::Show);
         out.push(Effect::Listen(self.context()));
-        let text = utter::prompt(self);
+        let text = aloud::prompt(self);
         self.say(text, out);
     }
 

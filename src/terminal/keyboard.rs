@@ -187,7 +187,10 @@ impl Keyboard {
                     return Some(Some(Event::Redraw));
                 }
                 let key = self.keymap.key(key.code, key.modifiers)?;
-                if key == Key::Enter && self.is_held() {
+                if key != Key::Enter {
+                    // Another key in between: the next enter is a new press.
+                    self.entered = None;
+                } else if self.is_held() {
                     return None;
                 }
                 Some(Some(Event::Key(key)))
