@@ -6,6 +6,7 @@
 
 pub mod ledger;
 pub mod settings;
+pub mod sound;
 
 use crate::{
     domain::{

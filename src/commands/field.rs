@@ -12,9 +12,10 @@ use clap::Args as ClapArgs;
 use super::failure::{Failure, Kind};
 use crate::{
     app::{
-        self, Edges, Events, Show, Silent, Voice,
+        self, Edges, Events, Show, Voice,
         ledger::{JournalLedger, wall_clock},
         settings,
+        sound::Sound,
     },
     domain::{place::Place, plan::Job},
     journal::{Journal, JournalError},
@@ -133,9 +134,13 @@ impl Session {
         let dumb = std::env::var_os("TERM").is_none_or(|term| term == "dumb" || term.is_empty());
         let terminal = io::stdin().is_terminal() && io::stdout().is_terminal() && !dumb;
         let context = Rc::new(Cell::new(Context::All));
+        let (sound, silent) = Sound::start(&self.setup.settings);
+        if let Some(why) = silent {
+            eprintln!("{why}");
+        }
         let mut voice = Listening {
             context: Rc::clone(&context),
-            inner: Silent,
+            inner: sound,
         };
         if terminal {
             let _raw = Raw::enter().map_err(|e| {

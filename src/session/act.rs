@@ -197,9 +197,9 @@ impl State {
                     out.push(Effect::Listen(self.context()));
                     let another = self.misses() >= 2;
                     let text = if another {
-                        super::aloud::ANOTHER_WAY.into()
+                        super::utter::ANOTHER_WAY.into()
                     } else {
-                        super::aloud::prompt(self)
+                        super::utter::prompt(self)
                     };
                     self.say(text, out);
                 } else {
@@ -310,7 +310,7 @@ impl State {
         self.note("Measure again. The old value is not kept.");
         out.push(Effect::Show);
         out.push(Effect::Listen(self.context()));
-        let text = super::aloud::prompt(self);
+        let text = super::utter::prompt(self);
         self.say(text, out);
     }
 

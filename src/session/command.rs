@@ -253,7 +253,7 @@ impl State {
                 self.note("Say one digit at a time, then affirm.");
                 out.push(Effect::Show);
                 out.push(Effect::Listen(self.context()));
-                self.say(super::aloud::BY_DIGIT.into(), out);
+                self.say(super::utter::BY_DIGIT.into(), out);
             }
             _ => self.refuse("No figure is asked for here.", out),
         }

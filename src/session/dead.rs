@@ -34,7 +34,7 @@ impl State {
         }
         out.push(Effect::Show);
         out.push(Effect::Listen(self.context()));
-        let text = super::aloud::prompt(self);
+        let text = super::utter::prompt(self);
         self.say(text, out);
     }
 

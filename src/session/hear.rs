@@ -141,19 +141,19 @@ impl State {
             self.key(key, out);
         }
         let draft = self.drafts.get(&target).cloned().unwrap_or_default();
-        self.say(super::aloud::digits(&draft), out);
+        self.say(super::utter::draft(&draft), out);
         true
     }
 
     /// Not understood. Twice in a row at a reading: another way is offered.
     pub(super) fn missed(&mut self, why: &str, out: &mut Vec<Effect>) {
         let mut text = format!("Not understood: {why}");
-        let mut spoken = super::aloud::AGAIN;
+        let mut spoken = super::utter::AGAIN;
         if let Some(Prompt::Ask(ask)) = self.stack.first_mut() {
             ask.misses = ask.misses.saturating_add(1);
             if ask.misses >= 2 {
                 text = "Not understood. Type it, or say: digit by digit.".into();
-                spoken = super::aloud::ANOTHER_WAY;
+                spoken = super::utter::ANOTHER_WAY;
             }
         }
         self.refuse(text, out);

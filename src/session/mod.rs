@@ -13,7 +13,6 @@
 //! terminals and clocks: time comes with events.
 
 mod act;
-pub mod aloud;
 mod command;
 mod dead;
 pub mod effect;

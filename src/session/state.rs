@@ -17,12 +17,11 @@ use crate::domain::{
 };
 
 use super::{
-    aloud,
     effect::{Effect, Tone},
     event::{Event, StopCause},
     prompt::Prompt,
     settings::Settings,
-    trade,
+    trade, utter,
 };
 
 /// What a session is given and never changes.
@@ -397,7 +396,7 @@ impl State {
     fn shown(&mut self, out: &mut Vec<Effect>) {
         out.push(Effect::Show);
         out.push(Effect::Listen(self.context()));
-        let text = aloud::prompt(self);
+        let text = utter::prompt(self);
         self.say(text, out);
     }
 

@@ -1,12 +1,15 @@
-//! The words of the screen: places, tests, works, ranges, verdicts, the keys and the menu.
+//! What is said aloud at each prompt, and the words of the screen: places, tests, works, ranges,
+//! verdicts, the keys and the menu.
 //!
-//! Short enough for 40 columns; nothing rests on colour. It leaves out what is said aloud (`aloud`)
-//! and how a screen is laid out (`screen`).
+//! Short and plain, the question last: a tester on a step-ladder hears the value first. The sentences
+//! said aloud have recorded phrases (`src/voice/clips/phrases.txt`); nothing rests on colour. It
+//! leaves out how a text becomes sound and how a screen is laid out (`screen`).
 
 use crate::{
     domain::{
         expect::{Expected, Verdict},
         place::Place,
+        reading::{Bound, Reading},
         record::{Work, WorkKind},
         test::Target,
     },
@@ -14,13 +17,22 @@ use crate::{
 };
 
 use super::{
-    prompt::{DeadStep, Prompt},
+    prompt::{Candidate, DeadStep, Entry, Prompt},
     state::State,
 };
 
 /// What the tester acknowledges after an insulation test.
 pub(super) const DISCHARGED: &str =
     "Probes held on until discharged; no voltage left (below 50 V) before anybody touches it.";
+
+/// Said when two hearings in a row were not right.
+pub(super) const ANOTHER_WAY: &str = "Not understood. Type it, or say: digit by digit.";
+
+/// Said when one hearing was not understood.
+pub(super) const AGAIN: &str = "Not understood.";
+
+/// Said when digits are taken one at a time.
+pub(super) const BY_DIGIT: &str = "One digit at a time, then done.";
 
 /// The keys, for the help page; six lines a page, 38 columns at most.
 pub(super) const HELP: [&str; 24] = [
@@ -106,6 +118,51 @@ impl State {
     }
 }
 
+/// What is said when the prompt on top comes up.
+pub(super) fn prompt(state: &State) -> String {
+    match state.top() {
+        Prompt::Gate(gate) => {
+            let text = gate.pages.get(gate.page).map(|p| p.join(" "));
+            format!("{}. {}", gate.stage.title(), text.unwrap_or_default())
+        }
+        Prompt::Dead(dead) => dead_question(dead.step, dead.pairs()),
+        Prompt::Fit(work) => {
+            let (head, question) = in_words(work.kind);
+            format!("{head}: {}. {question}", work_text(work))
+        }
+        Prompt::TakeOut(work) => {
+            let (head, question) = out_words(work.kind);
+            format!("{head}: {}. {question}", work_text(work))
+        }
+        Prompt::Hold(_) => "Hold the probes on until discharged. Discharged?".into(),
+        Prompt::Ask(ask) => {
+            let range = range_text(&ask.expected);
+            format!("{}. {range}", target_text(&ask.target))
+        }
+        Prompt::Confirm(c) => read_back(c),
+        Prompt::Question(c) => {
+            let finding = c.assessment.findings.first().map(|f| f.text.clone());
+            format!(
+                "{}. {} Keep as found, or measure again?",
+                verdict_text(c.assessment.verdict),
+                finding.unwrap_or_default()
+            )
+        }
+        Prompt::List(list) => {
+            let lines: Vec<String> = list
+                .shown()
+                .map(|(n, (t, _))| format!("{n}: {t}."))
+                .collect();
+            format!("{} {}", list.title, lines.join(" "))
+        }
+        Prompt::Standby => "Standby.".into(),
+        Prompt::Trouble(_) => "Not kept. Try again?".into(),
+        Prompt::StopAsk => "End the session?".into(),
+        Prompt::Finish => "Nothing is left to do.".into(),
+        Prompt::Page(_) | Prompt::Menu | Prompt::Call(_) => String::new(),
+    }
+}
+
 /// The question of a step of proving dead.
 pub(super) fn dead_question(step: DeadStep, pairs: &str) -> String {
     match step {
@@ -115,6 +172,56 @@ pub(super) fn dead_question(step: DeadStep, pairs: &str) -> String {
         DeadStep::Dead => format!("No voltage: {pairs}?"),
         DeadStep::After => "Indicator proved again after?".into(),
     }
+}
+
+/// The read-back: value digit by digit, unit, place, verdict, question.
+pub(super) fn read_back(candidate: &Candidate) -> String {
+    let value = match &candidate.entry {
+        Entry::Reading(reading) => spoken(reading),
+        tick @ Entry::Tick(_) => tick.to_string(),
+    };
+    let off = match candidate.assessment.verdict {
+        Verdict::InRange | Verdict::Unknown => String::new(),
+        verdict => format!(" {}.", verdict_text(verdict)),
+    };
+    format!("{value}. {}.{off} Affirm?", target_text(&candidate.target))
+}
+
+/// A reading digit by digit.
+pub(super) fn spoken(reading: &Reading) -> String {
+    let unit = reading.unit().map_or("", |u| u.word());
+    let figure = reading.value().map(|v| draft(&v.to_string()));
+    let figure = figure.unwrap_or_default();
+    let text = match reading.bound() {
+        Bound::Open => return "open circuit".into(),
+        Bound::OverRange => return "over range".into(),
+        Bound::Above => format!("greater than {figure} {unit}"),
+        Bound::Below => format!("less than {figure} {unit}"),
+        Bound::Exact => format!("{figure} {unit}"),
+    };
+    text.trim_end().into()
+}
+
+/// Half-typed digits, one word each.
+pub(super) fn draft(text: &str) -> String {
+    let word = |c: char| match c {
+        '0' => "zero",
+        '1' => "one",
+        '2' => "two",
+        '3' => "three",
+        '4' => "four",
+        '5' => "five",
+        '6' => "six",
+        '7' => "seven",
+        '8' => "eight",
+        '9' => "nine",
+        '.' => "decimal",
+        '>' => "greater than",
+        '<' => "less than",
+        _ => "",
+    };
+    let words: Vec<&str> = text.chars().map(word).filter(|w| !w.is_empty()).collect();
+    words.join(" ")
 }
 
 /// How a reading lies, in words that hold without colour.
