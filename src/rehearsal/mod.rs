@@ -33,7 +33,7 @@ clips!(
     "insulation",
     "lights",
     "lights-again",
-    "lights-drill",
+    "lights-slam",
     "list-open",
     "measure-again",
     "negative",
