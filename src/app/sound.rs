@@ -1,17 +1,24 @@
-//! The loudspeaker as an edge of the session.
+//! Loudspeaker and ear as one edge of the session.
 //!
-//! Promises: without sound out everything else goes on, and one line says so. It leaves out how a
-//! text becomes sound.
+//! Promises: without sound out or in everything else goes on, and one line says so; while the
+//! loudspeaker sounds the ear is told. It leaves out how a text becomes sound and sound a meaning.
+
+use std::sync::{Arc, atomic::AtomicBool};
 
 use super::Voice;
 use crate::{
     session::{Settings, Tone},
-    voice::speaker::{self, Speaker},
+    speech::meaning::Context,
+    voice::{
+        ear::Ear,
+        speaker::{self, Speaker},
+    },
 };
 
-/// A loudspeaker, or none.
+/// A loudspeaker, or none; an ear, or none.
 pub struct Sound {
     speaker: Option<Speaker>,
+    ear: Option<Ear>,
 }
 
 impl Sound {
@@ -20,17 +27,41 @@ impl Sound {
     #[must_use]
     pub fn start(settings: &Settings) -> (Self, Option<String>) {
         if settings.text_only || settings.volume == 0 {
-            return (Self { speaker: None }, None);
+            let silent = Self {
+                speaker: None,
+                ear: None,
+            };
+            return (silent, None);
         }
         match Speaker::open(f32::from(settings.volume) / 100.0) {
             Ok(speaker) => (
                 Self {
                     speaker: Some(speaker),
+                    ear: None,
                 },
                 None,
             ),
-            Err(why) => (Self { speaker: None }, Some(why.to_string())),
+            Err(why) => {
+                let silent = Self {
+                    speaker: None,
+                    ear: None,
+                };
+                (silent, Some(why.to_string()))
+            }
         }
+    }
+
+    /// True while the tool itself can be heard.
+    #[must_use]
+    pub fn mouth(&self) -> Arc<AtomicBool> {
+        self.speaker
+            .as_ref()
+            .map_or_else(Arc::default, Speaker::mouth)
+    }
+
+    /// Gives it an ear.
+    pub fn listen_with(&mut self, ear: Ear) {
+        self.ear = Some(ear);
     }
 }
 
@@ -53,9 +84,24 @@ impl Voice for Sound {
         }
     }
 
+    fn listen(&mut self, context: Context) {
+        if let Some(ear) = &self.ear {
+            ear.listen_for(context);
+        }
+    }
+
     fn pause(&mut self, pause: bool) {
         if let (true, Some(speaker)) = (pause, &self.speaker) {
             speaker.hush();
+        }
+        if let Some(ear) = &self.ear {
+            ear.pause(pause);
+        }
+    }
+
+    fn talk(&mut self) {
+        if let Some(ear) = &self.ear {
+            ear.once();
         }
     }
 }
