@@ -245,7 +245,10 @@ mod tests {
             out.push(player.next(&mut queue));
         }
         assert!((4790..=4805).contains(&out.len()), "{}", out.len());
-        let jump = out.windows(2).map(|w| (w[1] - w[0]).abs()).fold(0.0, f32::max);
+        let jump = out
+            .windows(2)
+            .map(|w| (w[1] - w[0]).abs())
+            .fold(0.0, f32::max);
         assert!(jump < 0.02, "{jump}");
     }
 
