@@ -5,9 +5,7 @@
 //! order in which they came. It leaves out what the session decides.
 
 pub mod ledger;
-pub mod listening;
 pub mod settings;
-pub mod sound;
 
 use crate::{
     domain::{

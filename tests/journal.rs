@@ -2,8 +2,12 @@
 
 #[path = "journal/damage.rs"]
 mod damage;
+#[path = "journal/format.rs"]
+mod format;
 #[path = "journal/keeping.rs"]
 mod keeping;
+#[path = "journal/kills.rs"]
+mod kills;
 #[path = "journal/mangled.rs"]
 mod mangled;
 #[path = "support/records.rs"]

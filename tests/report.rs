@@ -5,6 +5,8 @@ mod joinery;
 #[path = "support/records.rs"]
 mod records;
 
+#[path = "report/join.rs"]
+mod join;
 #[path = "report/review.rs"]
 mod review;
 #[path = "report/sheet.rs"]

@@ -2,6 +2,7 @@
 
 mod amend;
 mod clip;
+mod ear;
 mod pager;
 
 use std::{io::IsTerminal, path::PathBuf};
@@ -96,7 +97,8 @@ pub fn run(args: &Args) -> Result<(), Failure> {
         return clip::play(&book, no, args.to.as_deref());
     }
     if args.listen_again {
-        return clip::listen_again(&book);
+        let ear = ear::open(&book)?;
+        return clip::listen_again(&book, &*ear);
     }
     let order = match args.by {
         _ if args.spoken => Order::Spoken,

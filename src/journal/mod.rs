@@ -9,6 +9,7 @@
 pub mod clips;
 pub mod error;
 pub mod inspect;
+pub mod join;
 mod lock;
 mod medium;
 pub mod places;
@@ -25,5 +26,5 @@ pub use inspect::{Inspection, inspect};
 pub use places::Places;
 pub use problem::{Problem, Trouble};
 pub use read::{Chain, Item, Log, Reader};
-pub use recover::Recovery;
+pub use recover::{Recovery, whole};
 pub use store::Journal;

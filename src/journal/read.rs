@@ -44,6 +44,10 @@ pub struct Chain {
     pub entries: EntryNo,
     /// The check of its newest entry that holds, or of its head.
     pub check: String,
+    /// Offset of its head in the file.
+    pub from: u64,
+    /// Offset after its newest block that holds; grows while the log is read.
+    pub to: u64,
 }
 
 /// What the reader hands out, in the order of the file.
@@ -169,17 +173,21 @@ impl<R: BufRead> Reader<R> {
     }
 
     fn take(&mut self, block: Block) {
-        let stray = block.stray;
-        match block.kind {
-            Kind::Preamble => {}
-            Kind::Journal => {
-                self.settle_doubt(None);
-                self.take_head(&block);
+        let head = match block.kind {
+            Kind::Journal => true,
+            Kind::Entry => false,
+            // A damaged header line must not cost more than what stands under it.
+            Kind::Unheaded if block.check.is_some() => self.chains.is_empty(),
+            Kind::Unheaded => {
+                self.problem(block.line, None, Trouble::Stray);
+                return;
             }
-            Kind::Entry => self.take_entry(block),
-        }
-        if let Some(line) = stray {
-            self.problem(line, None, Trouble::Stray);
+        };
+        if head {
+            self.settle_doubt(None);
+            self.take_head(&block);
+        } else {
+            self.take_entry(block);
         }
     }
 
@@ -235,6 +243,8 @@ impl<R: BufRead> Reader<R> {
             start,
             entries: 0,
             check: computed,
+            from: block.start,
+            to: block.end,
         };
         self.chains.push(chain.clone());
         self.ready.push_back(Item::Chain(chain));
@@ -360,6 +370,11 @@ impl<R: BufRead> Reader<R> {
     fn hold(&mut self, block: &Block, check: &str) {
         self.before = Some(check.to_owned());
         self.held_end = block.end;
+        if block.kind == Kind::Entry
+            && let Some(chain) = self.chains.last_mut()
+        {
+            chain.to = block.end;
+        }
         self.held_ended = block.ended;
         self.held_line = block.line;
         if self.recent.len() == RECENT {

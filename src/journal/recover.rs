@@ -249,7 +249,10 @@ fn begin(
 }
 
 /// Writes a file so that it appears whole or not at all, readable by its owner only.
-pub(super) fn whole(path: &Path, folder: &Path, bytes: &[u8]) -> io::Result<()> {
+///
+/// # Errors
+/// The file system's; nothing is left behind then but what stood there.
+pub fn whole(path: &Path, folder: &Path, bytes: &[u8]) -> io::Result<()> {
     let mut file = tempfile::Builder::new()
         .prefix(".handsfull-")
         .tempfile_in(folder)?;

@@ -9,7 +9,9 @@ use crate::domain::standing::Standing;
 /// Adds up items in the order in which the reader hands them out.
 #[derive(Debug, Default)]
 pub struct Replay {
-    before: Vec<Standing>,
+    /// Journals added up and not joined yet, by name.
+    before: Vec<(String, Standing)>,
+    name: String,
     now: Standing,
 }
 
@@ -30,22 +32,35 @@ impl Replay {
     }
 
     fn chain(&mut self, chain: &Chain) {
-        self.before.push(std::mem::take(&mut self.now));
-        if !chain.joins.is_empty() {
-            self.now = Standing::joined(std::mem::take(&mut self.before));
+        let name = std::mem::replace(&mut self.name, chain.journal.clone());
+        self.before.push((name, std::mem::take(&mut self.now)));
+        if chain.joins.is_empty() {
+            return;
         }
+        // Only what the join took in: a journal brought in later must not be decided about by
+        // entries that did not know it.
+        let joins = |name: &String| chain.joins.iter().any(|j| j.journal == *name);
+        let (taken, left) = std::mem::take(&mut self.before)
+            .into_iter()
+            .partition(|(name, _)| joins(name));
+        self.before = left;
+        self.now = joined(taken);
     }
 
     /// Where the job stands.
     #[must_use]
     pub fn standing(mut self) -> Standing {
-        self.before.retain(|side| *side != Standing::default());
+        self.before.retain(|(_, side)| *side != Standing::default());
         if self.before.is_empty() {
             return self.now;
         }
-        self.before.push(self.now);
-        Standing::joined(self.before)
+        self.before.push((self.name, self.now));
+        joined(self.before)
     }
+}
+
+fn joined(sides: Vec<(String, Standing)>) -> Standing {
+    Standing::joined(sides.into_iter().map(|(_, side)| side).collect())
 }
 
 /// Where the job of a whole log stands.

@@ -1,4 +1,5 @@
 //! Cuts a file into blocks: the head of a journal or an entry, its sealed lines, its check.
+//! A block ends with its check, or where the next header stands.
 //!
 //! Promises: any bytes at all give blocks, never a panic, and never more memory than a few entries
 //! take. It leaves out what the blocks mean and whether their checks hold.
@@ -10,8 +11,9 @@ use super::text::{CHECK, ENTRY, JOURNAL, LONGEST};
 /// What a block begins with.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) enum Kind {
-    /// Lines before the first header.
-    Preamble,
+    /// Lines under no header: before the first one, or after a check. With a check they are a
+    /// head or an entry whose header line was damaged, without one they belong to nothing.
+    Unheaded,
     Journal,
     Entry,
 }
@@ -22,6 +24,8 @@ pub(super) struct Block {
     pub kind: Kind,
     /// Line of its header, from 1.
     pub line: usize,
+    /// Offset of its first byte.
+    pub start: u64,
     /// Offset after its check line, or after its last byte when it has none.
     pub end: u64,
     /// The lines its check covers, each ended by LF (a CR before it is dropped: a file that went
@@ -31,13 +35,12 @@ pub(super) struct Block {
     pub check: Option<String>,
     /// The check line ends with a line feed.
     pub ended: bool,
-    /// First line after the check that is neither blank nor a header.
-    pub stray: Option<usize>,
 }
 
 struct Line {
     bytes: Vec<u8>,
     ended: bool,
+    start: u64,
     end: u64,
     no: usize,
 }
@@ -62,22 +65,28 @@ impl<R: BufRead> Scanner<R> {
 
     /// The next block; `None` at the end of the file.
     pub fn next(&mut self) -> io::Result<Option<Block>> {
-        let Some(first) = self.take_line()? else {
-            return Ok(None);
+        let first = loop {
+            match self.take_line()? {
+                None => return Ok(None),
+                // Blank lines part blocks and belong to none.
+                Some(line) if blank(&line.bytes) => {}
+                Some(line) => break line,
+            }
         };
-        let kind = kind(&first.bytes).unwrap_or(Kind::Preamble);
         let mut block = Block {
-            kind,
+            kind: kind(&first.bytes).unwrap_or(Kind::Unheaded),
             line: first.no,
+            start: first.start,
             end: first.end,
             lines: Vec::new(),
             check: None,
             ended: false,
-            stray: None,
         };
         block.take(first);
-        while let Some(line) = self.take_line()? {
-            if self::kind(&line.bytes).is_some() {
+        while block.check.is_none()
+            && let Some(line) = self.take_line()?
+        {
+            if kind(&line.bytes).is_some() {
                 self.ahead = Some(line);
                 break;
             }
@@ -125,6 +134,7 @@ impl<R: BufRead> Scanner<R> {
         Ok(Some(Line {
             bytes,
             ended,
+            start,
             end: self.at,
             no: self.line,
         }))
@@ -133,13 +143,6 @@ impl<R: BufRead> Scanner<R> {
 
 impl Block {
     fn take(&mut self, line: Line) {
-        if self.check.is_some() || self.kind == Kind::Preamble {
-            let blank = line.bytes.iter().all(u8::is_ascii_whitespace);
-            if !blank && self.stray.is_none() {
-                self.stray = Some(line.no);
-            }
-            return;
-        }
         self.end = line.end;
         if let Some(check) = check_of(&line.bytes) {
             self.check = Some(check);
@@ -149,6 +152,10 @@ impl Block {
             self.lines.push(b'\n');
         }
     }
+}
+
+fn blank(line: &[u8]) -> bool {
+    line.iter().all(u8::is_ascii_whitespace)
 }
 
 fn kind(line: &[u8]) -> Option<Kind> {
@@ -182,19 +189,30 @@ mod tests {
     }
 
     #[test]
-    fn blocks_are_cut_at_their_header_lines() {
-        let check = "0".repeat(64);
+    fn blocks_are_cut_at_their_headers_and_checks() {
+        let check = format!("check = \"{}\"", "0".repeat(64));
         let text = format!(
-            "stray\n[[journal]]\na = 1\ncheck = \"{check}\"\n\n[[entry]]\r\nno = 1\r\ncheck = \"{check}\"\r\n# note\n[[entry]]\nno = 2\nchec"
+            "stray\n[[journal]]\na = 1\n{check}\n\n[[entry]]\r\nno = 1\r\n{check}\r\n# note\n\
+             [[entrY]]\nno = 2\n{check}\n[[entry]]\nno = 3\nchec"
         );
         let all = blocks(text.as_bytes());
-        assert_eq!(all.len(), 4);
-        assert_eq!((all[0].kind, all[0].stray), (Kind::Preamble, Some(1)));
+        let seen: Vec<_> = all
+            .iter()
+            .map(|b| (b.kind, b.line, b.check.is_some()))
+            .collect();
+        assert_eq!(
+            seen,
+            vec![
+                (Kind::Unheaded, 1, false),
+                (Kind::Journal, 2, true),
+                (Kind::Entry, 6, true),
+                (Kind::Unheaded, 9, true),
+                (Kind::Entry, 13, false),
+            ]
+        );
         assert_eq!(all[1].lines, b"[[journal]]\na = 1\n");
         assert_eq!(all[2].lines, b"[[entry]]\nno = 1\n", "CR LF reads as LF");
-        assert_eq!(all[2].stray, Some(9));
-        assert_eq!((all[3].check.clone(), all[3].line), (None, 10));
-        assert_eq!(all[3].end, text.len() as u64);
+        assert_eq!(all[4].end, text.len() as u64);
     }
 
     #[test]

@@ -33,7 +33,7 @@ clips!(
     "insulation",
     "lights",
     "lights-again",
-    "lights-slam",
+    "lights-drill",
     "list-open",
     "measure-again",
     "negative",
@@ -46,8 +46,5 @@ clips!(
 /// A recorded utterance.
 #[must_use]
 pub fn clip(name: &str) -> Option<&'static [u8]> {
-    CLIPS
-        .iter()
-        .find(|(n, _)| *n == name)
-        .map(|(_, flac)| *flac)
+    CLIPS.iter().find(|(n, _)| *n == name).map(|(_, flac)| *flac)
 }

@@ -127,9 +127,8 @@ pub struct State {
     pub(super) here: Here,
     /// The test called by name; done before the next in order.
     pub(super) called: Option<Target>,
-    /// Tests passed over in this session, the longest ago first; true: behind all others, false:
-    /// behind the others of their stage.
-    pub(super) passed: Vec<(Target, bool)>,
+    /// Tests passed over in this session, the longest ago first: they come last.
+    pub(super) passed: Vec<Target>,
     /// Works the tester said are still in: asked again later, not at every step.
     pub(super) left_in: BTreeSet<Work>,
     /// Circuits that may hold a charge from an insulation test.
@@ -145,8 +144,6 @@ pub struct State {
     pub(super) awaiting: bool,
     /// The step of the work changes once the last pending record is kept.
     pub(super) move_on: bool,
-    /// A work came out: stages may close elsewhere than where the tester is.
-    pub(super) look_everywhere: bool,
     /// Events that came while waiting for the journal.
     pub(super) held: VecDeque<Event>,
     pub(super) ear: EarState,
@@ -197,7 +194,6 @@ pub fn begin(setup: Setup, standing: Standing) -> (State, Vec<Effect>) {
         pending: VecDeque::new(),
         awaiting: false,
         move_on: false,
-        look_everywhere: false,
         held: VecDeque::new(),
         ear,
         level: 0,

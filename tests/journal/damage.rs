@@ -274,6 +274,7 @@ fn a_copy_in_the_middle_counts_once() {
 #[test]
 fn text_between_entries_is_reported_and_costs_nothing() {
     let job = Job::with(2);
+    // A remark before each entry, under the check of the one before.
     job.edit(|text| text.replacen("\n[[entry]]", "# checked by the foreman\n[[entry]]", 2));
     let troubles = job.troubles();
     assert_eq!(
@@ -319,6 +320,18 @@ fn a_changed_head_is_reported_and_the_entries_stay() {
         ["note 1", "note 2"],
         "the first entry proves it"
     );
+}
+
+#[test]
+fn a_changed_header_line_costs_at_most_what_stands_under_it() {
+    let job = Job::with(3);
+    job.edit(|text| text.replacen("[[journal]]", "[[jovrnal]]", 1));
+    assert_eq!(job.troubles(), vec![(None, Trouble::Head)]);
+    assert_eq!(job.notes(), ["note 1", "note 2", "note 3"]);
+    let job = Job::with(3);
+    job.edit(|text| text.replacen("[[entry]]", "[[entri]]", 1));
+    assert_eq!(job.troubles(), vec![(Some(1), Trouble::Broken)]);
+    assert_eq!(job.notes(), ["note 2", "note 3"]);
 }
 
 #[test]

@@ -416,6 +416,7 @@ fn a_browser_prints_it_on_landscape_pages_with_every_value() {
         ">299",
         "(X)",
         "line-cpc link at the board",
+        "a joint about 0.22 Ω too high",
         "Signature",
         "every check holds",
     ] {

@@ -10,8 +10,16 @@ use super::{
     no_value, print,
 };
 use crate::{
-    domain::record::{ReadingKept, Record},
+    domain::{
+        kept::Value,
+        reading::Unit,
+        record::{ReadingKept, Record},
+        standing::value_of,
+        test::Target,
+    },
     journal::clips::{ClipError, Clips, Keeping, RATE},
+    report::words,
+    speech::meaning::{Context, Control, Heard, Meaning},
 };
 
 fn clips(book: &Logbook) -> Clips {
@@ -83,7 +91,87 @@ fn write_wav(path: &Path, samples: &[i16]) -> Result<(), hound::Error> {
     out.finalize()
 }
 
-/// Runs every clip through the present voice.
-pub(super) fn listen_again(_book: &Logbook) -> Result<(), Failure> {
-    Err(Failure::new(Kind::Device, "no voice is built in yet"))
+/// What the present voice hears in a clip, or why it cannot be asked.
+pub(super) type Ear<'a> = dyn Fn(Context, &[i16]) -> Result<Heard, String> + 'a;
+
+/// Runs every clip through the present voice; shows where it hears something else than what was
+/// kept. Nothing is changed: a value that was affirmed stands, whatever is heard today.
+pub(super) fn listen_again(book: &Logbook, ear: &Ear) -> Result<(), Failure> {
+    let clips = clips(book);
+    let mut tally = Tally::default();
+    for entry in &book.inspection.log.entries {
+        let Record::Reading(reading) = &entry.record else {
+            continue;
+        };
+        let Some(file) = &reading.clip else { continue };
+        match clips.load(file, reading.clip_digest.as_deref()) {
+            Err(ClipError::Io { source, .. }) if source.kind() == std::io::ErrorKind::NotFound => {
+                tally.gone += 1;
+            }
+            Err(e) => print(&format!("#{} {e}\n", entry.no))?,
+            Ok(samples) => {
+                let heard = ear(context_of(&reading.target), &samples)
+                    .map_err(|e| Failure::new(Kind::Device, e))?;
+                tally.heard += 1;
+                if let Some(line) = differs(reading, &heard) {
+                    tally.differ += 1;
+                    print(&format!("#{} {}: {line}\n", entry.no, reading.target))?;
+                }
+            }
+        }
+    }
+    print(&format!(
+        "{} clips heard again, {} heard differently from what was kept, {} no longer there\n",
+        tally.heard, tally.differ, tally.gone
+    ))
 }
+
+#[derive(Default)]
+struct Tally {
+    heard: usize,
+    differ: usize,
+    gone: usize,
+}
+
+/// What may be said where this test is read.
+fn context_of(target: &Target) -> Context {
+    match target.test.unit() {
+        None => Context::Tick,
+        Some(Unit::Ohm) => Context::Ohms,
+        Some(Unit::Megohm) => Context::Insulation,
+        Some(_) => Context::Live,
+    }
+}
+
+/// The difference in words; `None` when today's hearing gives the value that was kept.
+fn differs(reading: &ReadingKept, heard: &Heard) -> Option<String> {
+    let kept = value_of(reading);
+    let now = match &heard.meaning {
+        Meaning::Reading(now) => {
+            let now = match reading.target.test.unit() {
+                Some(unit) => now.clone().or_unit(unit),
+                None => now.clone(),
+            };
+            if kept == Some(Value::Reading(now.clone())) {
+                return None;
+            }
+            now.to_string()
+        }
+        Meaning::Control(Control::Confirmed) if kept == Some(Value::Ticked(true)) => return None,
+        Meaning::Control(Control::NotConfirmed) if kept == Some(Value::Ticked(false)) => {
+            return None;
+        }
+        Meaning::Ambiguous(all) => format!("one of {} meanings", all.len()),
+        Meaning::Nothing(why) => format!("nothing ({why})"),
+        _ => "no reading".into(),
+    };
+    let text = words::raw(&reading.value, reading.unit.as_deref());
+    Some(format!(
+        "kept {text}, heard now \"{}\": {now}",
+        heard.words()
+    ))
+}
+
+#[cfg(test)]
+#[path = "clip_tests.rs"]
+mod tests;

@@ -11,10 +11,7 @@ pub mod tone;
 
 use std::{
     collections::VecDeque,
-    sync::{
-        Arc, Mutex, MutexGuard, PoisonError,
-        atomic::{AtomicBool, Ordering},
-    },
+    sync::{Arc, Mutex, MutexGuard, PoisonError},
 };
 
 use cpal::{
@@ -45,7 +42,6 @@ struct Queue {
 /// A loudspeaker.
 pub struct Speaker {
     queue: Arc<Mutex<Queue>>,
-    mouth: Arc<AtomicBool>,
     voice: Prompter,
     // Sound stops when it is dropped.
     _stream: cpal::Stream,
@@ -96,11 +92,9 @@ impl Speaker {
     /// [`SpeakerError`] with the device's own reason.
     pub fn open(volume: f32) -> Result<Self, SpeakerError> {
         let queue = Arc::new(Mutex::new(Queue::default()));
-        let mouth = Arc::new(AtomicBool::new(false));
-        let stream = quietly(|| open(&queue, &mouth)).map_err(SpeakerError)?;
+        let stream = quietly(|| open(&queue)).map_err(SpeakerError)?;
         Ok(Self {
             queue,
-            mouth,
             voice: Prompter::new(volume),
             _stream: stream,
         })
@@ -116,8 +110,6 @@ impl Speaker {
         let mut queue = self.queue();
         queue.samples.clear();
         queue.samples.extend(samples);
-        self.mouth
-            .store(!queue.samples.is_empty(), Ordering::Relaxed);
     }
 
     /// Sounds a tone, ahead of what is being said.
@@ -127,7 +119,6 @@ impl Speaker {
         for sample in tone.into_iter().rev() {
             queue.samples.push_front(sample);
         }
-        self.mouth.store(true, Ordering::Relaxed);
     }
 
     /// Plays samples at [`RATE`] after what is being said.
@@ -140,12 +131,6 @@ impl Speaker {
         self.queue().samples.clear();
     }
 
-    /// True while anything sounds, for whoever must not hear it.
-    #[must_use]
-    pub fn mouth(&self) -> Arc<AtomicBool> {
-        Arc::clone(&self.mouth)
-    }
-
     /// Whether anything sounds.
     #[must_use]
     pub fn sounding(&self) -> bool {
@@ -153,7 +138,7 @@ impl Speaker {
     }
 }
 
-fn open(queue: &Arc<Mutex<Queue>>, mouth: &Arc<AtomicBool>) -> Result<cpal::Stream, String> {
+fn open(queue: &Arc<Mutex<Queue>>) -> Result<cpal::Stream, String> {
     let device = cpal::default_host()
         .default_output_device()
         .ok_or("there is no output device")?;
@@ -161,11 +146,11 @@ fn open(queue: &Arc<Mutex<Queue>>, mouth: &Arc<AtomicBool>) -> Result<cpal::Stre
     let format = config.sample_format();
     let config: cpal::StreamConfig = config.into();
     let stream = match format {
-        SampleFormat::F32 => run::<f32>(&device, config, queue, mouth),
-        SampleFormat::I16 => run::<i16>(&device, config, queue, mouth),
-        SampleFormat::I32 => run::<i32>(&device, config, queue, mouth),
-        SampleFormat::U16 => run::<u16>(&device, config, queue, mouth),
-        SampleFormat::U8 => run::<u8>(&device, config, queue, mouth),
+        SampleFormat::F32 => run::<f32>(&device, config, queue),
+        SampleFormat::I16 => run::<i16>(&device, config, queue),
+        SampleFormat::I32 => run::<i32>(&device, config, queue),
+        SampleFormat::U16 => run::<u16>(&device, config, queue),
+        SampleFormat::U8 => run::<u8>(&device, config, queue),
         other => return Err(format!("its sample format {other} is not known here")),
     }?;
     stream.play().map_err(|e| e.to_string())?;
@@ -176,14 +161,13 @@ fn run<T>(
     device: &cpal::Device,
     config: cpal::StreamConfig,
     queue: &Arc<Mutex<Queue>>,
-    mouth: &Arc<AtomicBool>,
 ) -> Result<cpal::Stream, String>
 where
     T: SizedSample + FromSample<f32>,
 {
     let channels = usize::from(config.channels).max(1);
     let mut player = Player::new(config.sample_rate);
-    let (queue, mouth) = (Arc::clone(queue), Arc::clone(mouth));
+    let queue = Arc::clone(queue);
     device
         .build_output_stream(
             config,
@@ -193,7 +177,6 @@ where
                     let value = player.next(&mut queue.samples);
                     frame.fill(T::from_sample(value));
                 }
-                mouth.store(!queue.samples.is_empty(), Ordering::Relaxed);
             },
             // A device that goes away falls silent; the screen says everything all the same.
             |_| {},
@@ -245,10 +228,7 @@ mod tests {
             out.push(player.next(&mut queue));
         }
         assert!((4790..=4805).contains(&out.len()), "{}", out.len());
-        let jump = out
-            .windows(2)
-            .map(|w| (w[1] - w[0]).abs())
-            .fold(0.0, f32::max);
+        let jump = out.windows(2).map(|w| (w[1] - w[0]).abs()).fold(0.0, f32::max);
         assert!(jump < 0.02, "{jump}");
     }
 
