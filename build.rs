@@ -31,7 +31,9 @@ fn clips(out: &Path) {
         .filter_map(|name| name.strip_suffix(".flac").map(str::to_owned))
         .collect();
     names.sort();
-    let mut list = String::from("/// Name and FLAC bytes of every clip.\npub const CLIPS: &[(&str, &[u8])] = &[\n");
+    let mut list = String::from(
+        "/// Name and FLAC bytes of every clip.\npub const CLIPS: &[(&str, &[u8])] = &[\n",
+    );
     for name in names {
         let file = root.join(FOLDER).join(format!("{name}.flac"));
         list += &format!("    ({name:?}, include_bytes!({file:?})),\n");

@@ -5,6 +5,9 @@
 #
 #   ./models-download.sh                    system packages and libvosk
 #   ./models-download.sh --no-system        libvosk only
+#   ./models-download.sh --tests            also what tests compare with: spoken prompts of a Debian
+#                                           package, Python's venv for published tables; what cannot
+#                                           be had is told, and the tests that need it skip
 #   ./models-download.sh --voice NAME --from SOURCE [--sha256 DIGEST]
 #                                           also a general Vosk model (zip) from its publisher:
 #                                           SOURCE is an address or a file you name. Not needed:
@@ -22,10 +25,11 @@ say() { printf '%s\n' "$*"; }
 trouble() { printf 'models-download: %s\n' "$*" >&2; }
 usage() { sed -n '2,/^set -euo/{/^#/!d;s/^# \{0,1\}//;p}' "${BASH_SOURCE[0]}"; }
 
-system=yes voice='' from='' digest=''
+system=yes tests=no voice='' from='' digest=''
 while [ $# -gt 0 ]; do
     case $1 in
     --no-system) system=no ;;
+    --tests) tests=yes ;;
     --voice) voice=${2:?"--voice needs a name"} && shift ;;
     --from) from=${2:?"--from needs an address or a file"} && shift ;;
     --sha256) digest=${2:?"--sha256 needs a digest"} && shift ;;
@@ -70,6 +74,7 @@ esac
 
 have() { command -v "$1" >/dev/null 2>&1; }
 has_pip() { have python3 && python3 -m pip --version >/dev/null 2>&1; }
+has_venv() { have python3 && python3 -c 'import ensurepip, venv' >/dev/null 2>&1; }
 is_arm() { case $platform in *aarch64 | *armv7l) return 0 ;; *) return 1 ;; esac }
 has_atomic() { compgen -G '/usr/lib/*/libatomic.so.1' >/dev/null || compgen -G '/lib/*/libatomic.so.1' >/dev/null; }
 
@@ -81,6 +86,7 @@ wanted() {
     has_pip || echo python3-pip
     have unzip || echo unzip
     if is_arm && ! has_atomic; then echo libatomic1; fi
+    if [ "$tests" = yes ] && ! has_venv; then echo python3-venv; fi
 }
 
 install_system() {
@@ -213,9 +219,33 @@ fetch_voice() {
     say "voice $voice: in models/$voice; lay the grammars over it with: handsfull voice adopt models/$voice"
 }
 
+# --- what tests compare with ---------------------------------------------------------------------
+# Prompts of a telephone exchange (CC BY-SA), spoken by a person: the tests hear them. They are not
+# part of the project and are unpacked where tests look for them.
+fetch_prompts() {
+    local package=asterisk-core-sounds-en-wav into=$here/target/tmp/debian-prompts
+    if [ -d "$into" ]; then
+        say "spoken prompts: there, skipped"
+        return 0
+    fi
+    if ! have apt-get || ! have dpkg-deb; then
+        say "spoken prompts: no apt-get here; the test that hears them will skip"
+        return 0
+    fi
+    mkdir -p "$work/prompts" "$here/target/tmp"
+    if (cd "$work/prompts" && apt-get download -q $package) &&
+        dpkg-deb -x "$work"/prompts/*.deb "$work/prompts/x"; then
+        mv "$work/prompts/x" "$into"
+        say "spoken prompts: in target/tmp"
+    else
+        say "spoken prompts: could not be fetched; the test that hears them will skip"
+    fi
+}
+
 [ "$system" = yes ] && install_system
 fetch_libvosk
 notices
+[ "$tests" = yes ] && fetch_prompts
 [ -n "$voice" ] && fetch_voice
 if [ "$missing" -ne 0 ]; then
     trouble "not everything is there; without libvosk the program works from the keypad"

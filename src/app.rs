@@ -5,7 +5,9 @@
 //! order in which they came. It leaves out what the session decides.
 
 pub mod ledger;
+pub mod listening;
 pub mod settings;
+pub mod sound;
 
 use crate::{
     domain::{

@@ -27,6 +27,7 @@ fn brief(meaning: &Meaning) -> String {
         Meaning::Control(Control::Test(test)) => format!("test {}", test.word()),
         Meaning::Control(Control::Stage(stage)) => format!("stage {}", stage.title()),
         Meaning::Control(Control::Reason(n)) => format!("reason {n}"),
+        Meaning::Control(Control::Digits(digits)) => format!("digits {digits}"),
         Meaning::Control(control) => control.word().into(),
         Meaning::Ambiguous(all) => all.iter().map(brief).collect::<Vec<_>>().join(" or "),
         Meaning::Nothing(why) => format!("nothing: {why}"),
@@ -579,4 +580,24 @@ fn a_missing_point_after_zero_is_asked_for() {
         panic!("zero five eight is no reading");
     };
     assert_eq!(why, "after \"zero\" say the point: \"zero point five\"");
+}
+
+#[test]
+fn digit_by_digit_takes_digits_and_the_point_alone() {
+    table(
+        Context::Digits,
+        "
+        zero            => digits 0
+        nought          => digits 0
+        five            => digits 5
+        point           => digits .
+        point five      => digits .5
+        zero point five => digits 0.5
+        affirm          => affirm
+        negative        => negative
+        say again       => say-again
+        fifteen         => nothing
+        done            => nothing
+        ",
+    );
 }

@@ -90,6 +90,6 @@ fn an_unknown_context_is_refused_with_the_names() {
     assert_eq!(
         String::from_utf8_lossy(&output.stderr),
         "handsfull: there is no context `numbers`\n  the contexts are ohms, insulation, live, tick, \
-         confirm, question, pick, gate, all\n"
+         confirm, question, pick, gate, digits, all\n"
     );
 }

@@ -2,5 +2,11 @@
 
 #[path = "sessions/bench.rs"]
 mod bench;
+#[path = "sessions/chance.rs"]
+mod chance;
 #[path = "sessions/days.rs"]
 mod days;
+#[path = "sessions/long_day.rs"]
+mod long_day;
+#[path = "sessions/noise.rs"]
+mod noise;

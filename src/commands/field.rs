@@ -5,19 +5,28 @@ use std::{
     io::{self, BufReader, IsTerminal, Write},
     path::{Path, PathBuf},
     rc::Rc,
+    sync::{Arc, mpsc::Receiver},
 };
 
 use clap::Args as ClapArgs;
 
-use super::failure::{Failure, Kind};
+use super::{
+    failure::{Failure, Kind},
+    voice::lexicon,
+};
 use crate::{
     app::{
-        self, Edges, Events, Show, Silent, Voice,
+        self, Edges, Events, Show, Voice,
         ledger::{JournalLedger, wall_clock},
+        listening::{self, Where},
         settings,
+        sound::Sound,
     },
     domain::{place::Place, plan::Job},
-    journal::{Journal, JournalError},
+    journal::{
+        Journal, JournalError,
+        clips::{Clips, Keeping},
+    },
     plan,
     session::{Event, Settings, Setup, State, Tone},
     speech::{
@@ -56,6 +65,29 @@ pub struct Args {
     /// Listen to one utterance at a time, opened by a key
     #[arg(long)]
     pub hold_to_talk: bool,
+    /// A recording in place of the microphone, played at the pace of speech
+    #[arg(long, value_name = "FILE", conflicts_with = "keypad_only")]
+    pub wav: Option<PathBuf>,
+    /// The microphone to use, by its name; the default one when left out
+    #[arg(long, value_name = "NAME", conflicts_with = "wav")]
+    pub microphone: Option<String>,
+    /// A voice folder in place of the embedded voice
+    #[arg(long, value_name = "FOLDER")]
+    pub voice: Option<PathBuf>,
+}
+
+impl Args {
+    /// Where to listen; nowhere when told so, and when keys come as lines and no recording is named:
+    /// a script does not speak.
+    fn ear(&self, settings: &Settings) -> Option<Where> {
+        let script = !io::stdin().is_terminal() && self.wav.is_none();
+        (!self.keypad_only && !script).then(|| Where {
+            wav: self.wav.clone(),
+            microphone: self.microphone.clone(),
+            voice: self.voice.clone(),
+            hold_to_talk: settings.hold_to_talk,
+        })
+    }
 }
 
 /// Runs the command.
@@ -78,9 +110,9 @@ pub fn run(args: &Args) -> Result<(), Failure> {
     };
     let signals = Signals::take()
         .map_err(|e| Failure::new(Kind::Device, format!("signals cannot be handled: {e}")))?;
+    let place = args.ear(&settings);
     let session = Session::open(&args.job, job, &tester, settings)?;
-    eprintln!("keypad only: no voice is used");
-    let end = session.work(keymap, signals)?;
+    let end = session.work(keymap, signals, place)?;
     let open = end.standing().works_in.len();
     if open > 0 {
         eprintln!("still in: {open} temporary works; `handsfull review` lists them");
@@ -93,7 +125,8 @@ struct Session {
     setup: Setup,
     standing: crate::domain::standing::Standing,
     ledger: JournalLedger,
-    phrases: Phrases,
+    phrases: Arc<Phrases>,
+    clips: PathBuf,
 }
 
 impl Session {
@@ -124,18 +157,59 @@ impl Session {
         Ok(Self {
             setup,
             standing: recovery.standing,
+            clips: journal.places().clips(),
             ledger: JournalLedger::new(journal),
-            phrases,
+            phrases: Arc::new(phrases),
         })
     }
 
-    fn work(mut self, keymap: Keymap, signals: Signals) -> Result<State, Failure> {
+    /// The ear, as the settings and the options want it; without one a line says why.
+    fn ear(&mut self, place: Option<Where>, sound: &mut Sound) -> Result<Option<Receiver<Event>>, Failure> {
+        let Some(place) = place else {
+            eprintln!("keypad only: no voice is used");
+            return Ok(None);
+        };
+        let clips = Clips::new(
+            self.clips.clone(),
+            Keeping {
+                any: self.setup.settings.keep_clips,
+                ..Keeping::default()
+            },
+        );
+        let phrases = Arc::clone(&self.phrases);
+        match listening::start(&place, phrases, &lexicon()?, clips, sound.mouth()) {
+            Ok((ear, events)) => {
+                sound.listen_with(ear);
+                self.setup.voice = Some(place.voice.map_or_else(
+                    || "embedded voice".to_owned(),
+                    |folder| folder.display().to_string(),
+                ));
+                Ok(Some(events))
+            }
+            Err(why) => {
+                eprintln!("{why}");
+                Ok(None)
+            }
+        }
+    }
+
+    fn work(
+        mut self,
+        keymap: Keymap,
+        signals: Signals,
+        place: Option<Where>,
+    ) -> Result<State, Failure> {
         let dumb = std::env::var_os("TERM").is_none_or(|term| term == "dumb" || term.is_empty());
         let terminal = io::stdin().is_terminal() && io::stdout().is_terminal() && !dumb;
         let context = Rc::new(Cell::new(Context::All));
+        let (mut sound, silent) = Sound::start(&self.setup.settings);
+        if let Some(why) = silent {
+            eprintln!("{why}");
+        }
+        let ear = self.ear(place, &mut sound)?;
         let mut voice = Listening {
             context: Rc::clone(&context),
-            inner: Silent,
+            inner: sound,
         };
         if terminal {
             let _raw = Raw::enter().map_err(|e| {
@@ -148,7 +222,7 @@ impl Session {
                 redraw: Rc::new(Cell::new(false)),
             };
             let mut keyboard = AtKeyboard {
-                keyboard: Keyboard::new(keymap, signals, None),
+                keyboard: Keyboard::new(keymap, signals, ear),
                 redraw: Rc::clone(&screen.redraw),
             };
             Ok(app::run(
@@ -177,7 +251,7 @@ impl Session {
                 })
             });
             let stdin = BufReader::new(io::stdin());
-            let mut lines = ByLines(Lines::new(stdin, keymap, signals, None, understand));
+            let mut lines = ByLines(Lines::new(stdin, keymap, signals, ear, understand));
             let mut plain = AsText(Plain::new(io::stdout(), COLUMNS, echo));
             Ok(app::run(
                 self.setup,

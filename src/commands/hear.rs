@@ -16,7 +16,7 @@ use crate::speech::{Context, Heard, Margins, Phrases, decide, spelling};
 /// Run recordings (or typed words) through the live pipeline, one JSON line each
 #[derive(Debug, ClapArgs)]
 pub struct Args {
-    /// What may be said: ohms, insulation, live, tick, confirm, question, pick, gate or all
+    /// What may be said: ohms, insulation, live, tick, confirm, question, pick, gate, digits or all
     #[arg(long, value_name = "NAME", default_value = "all")]
     context: String,
     /// Words to be understood as if they had been heard; may be given several times

@@ -33,7 +33,7 @@ clips!(
     "insulation",
     "lights",
     "lights-again",
-    "lights-drill",
+    "lights-slam",
     "list-open",
     "measure-again",
     "negative",
@@ -46,5 +46,8 @@ clips!(
 /// A recorded utterance.
 #[must_use]
 pub fn clip(name: &str) -> Option<&'static [u8]> {
-    CLIPS.iter().find(|(n, _)| *n == name).map(|(_, flac)| *flac)
+    CLIPS
+        .iter()
+        .find(|(n, _)| *n == name)
+        .map(|(_, flac)| *flac)
 }

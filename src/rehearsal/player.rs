@@ -46,7 +46,10 @@ pub fn look(state: &State) -> Seen {
 
 /// The figure of a value's text: what stands before the unit.
 fn figure(text: &str) -> String {
-    text.split_whitespace().next().unwrap_or_default().to_owned()
+    text.split_whitespace()
+        .next()
+        .unwrap_or_default()
+        .to_owned()
 }
 
 /// What is heard of an utterance, and what the onlooker is told.

@@ -8,7 +8,7 @@ use crate::{
     domain::{
         place::Place,
         record::{Entered, Record},
-        test::{Stage, TestKind},
+        test::{Stage, Target, TestKind},
     },
     speech::meaning::{Control, Heard},
 };
@@ -78,6 +78,14 @@ impl State {
             Act::CallTest => self.tests(out),
             Act::Talk => self.talk(out),
             Act::Nothing => out.push(Effect::Show),
+        }
+    }
+
+    /// Hearings in a row that were not right, at the reading in hand.
+    fn misses(&self) -> u8 {
+        match self.stack.first() {
+            Some(Prompt::Ask(ask)) => ask.misses,
+            _ => 0,
         }
     }
 
@@ -166,8 +174,9 @@ impl State {
                 out,
             ),
             Prompt::Dead(dead) => self.dead_no(dead.step, out),
+            Prompt::Fit(_) if self.stack.len() > 1 => self.pop(out),
             Prompt::Fit(_) => {
-                self.note("Not fitted: that test comes later.");
+                self.note("Not done: what needs it comes later.");
                 self.later(out);
             }
             Prompt::TakeOut(work) => self.stays_in(&work, out),
@@ -186,7 +195,12 @@ impl State {
                     }
                     out.push(Effect::Show);
                     out.push(Effect::Listen(self.context()));
-                    let text = self.notice.clone();
+                    let another = self.misses() >= 2;
+                    let text = if another {
+                        super::utter::ANOTHER_WAY.into()
+                    } else {
+                        super::utter::prompt(self)
+                    };
                     self.say(text, out);
                 } else {
                     self.pop_all();
@@ -232,7 +246,8 @@ impl State {
         });
         if let Some(other) = standing
             && other.entered != candidate.entered
-            && other.entry != candidate.entry
+            // As printed: 0.50 and 0.5 are two values.
+            && other.entry.to_string() != candidate.entry.to_string()
         {
             let line = |c: &Candidate| match c.entered {
                 Entered::Voice => format!("{} (heard)", c.entry),
@@ -372,15 +387,23 @@ impl State {
     /// The test in hand comes later; the next one now.
     pub(super) fn later(&mut self, out: &mut Vec<Effect>) {
         self.pop_all();
-        let target = match self.stack.first() {
-            Some(Prompt::Ask(ask)) => Some(ask.target.clone()),
-            _ => self.wanted(),
-        };
-        if let Some(target) = target {
+        if let Some(target) = self.wanted() {
             if group(&target).0 == Stage::Nulling {
                 self.note("Leads not nulled: readings will be off.");
             }
-            self.pass_over(target);
+            // Without the work none of the tests that need it can be done.
+            if let Some(Prompt::Fit(work)) = self.stack.first().cloned() {
+                let needing = self.setup.needing(&work).filter(|t| self.is_open(t));
+                let all: Vec<Target> = needing.cloned().collect();
+                for other in all {
+                    self.pass_over(other, false);
+                }
+            } else {
+                self.pass_over(target.clone(), false);
+            }
+            if self.called.as_ref() == Some(&target) {
+                self.called = None;
+            }
         }
         self.advance(out);
     }

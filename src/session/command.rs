@@ -57,6 +57,8 @@ impl State {
             Control::LinkIn => self.link_in(out),
             Control::LinkOut => self.link_out(out),
             Control::DigitByDigit => self.start_digits(out),
+            // Taken where they are asked for, before it comes to commands.
+            Control::Digits(_) => self.refuse("No figure is asked for digit by digit.", out),
             Control::Stop => match self.top() {
                 Prompt::StopAsk => out.push(Effect::Show),
                 _ => self.push(Prompt::StopAsk, out),
@@ -205,9 +207,7 @@ impl State {
         match self.stack.last_mut() {
             Some(Prompt::Gate(gate)) if gate.page + 1 < gate.pages.len() => {
                 gate.page += 1;
-                let text = gate.pages[gate.page].join(" ");
                 out.push(Effect::Show);
-                self.say(text, out);
             }
             Some(Prompt::Gate(_)) => self.refuse("Acknowledge first: enter, or say done.", out),
             Some(Prompt::Page(page)) if page.page + 1 < page.pages.len() => {
@@ -250,11 +250,10 @@ impl State {
                 ask.by_digit = true;
                 let target = ask.target.clone();
                 self.drafts.remove(&target);
-                self.note("Say one digit at a time, then done.");
+                self.note("Say one digit at a time, then affirm.");
                 out.push(Effect::Show);
                 out.push(Effect::Listen(self.context()));
-                let text = self.notice.clone();
-                self.say(text, out);
+                self.say(super::utter::BY_DIGIT.into(), out);
             }
             _ => self.refuse("No figure is asked for here.", out),
         }
@@ -517,7 +516,7 @@ impl State {
         if self.stack.iter().any(|p| matches!(p, Prompt::Standby)) {
             out.push(Effect::Pause(false));
         }
-        self.passed.retain(|t| *t != target);
+        self.passed.retain(|(t, _)| *t != target);
         self.called = Some(target);
         self.advance(out);
     }

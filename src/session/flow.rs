@@ -36,7 +36,7 @@ impl State {
     }
 
     /// Required tests still to be done, in order.
-    pub(super) fn open(&self) -> impl Iterator<Item = &Target> {
+    pub fn open(&self) -> impl Iterator<Item = &Target> {
         self.setup.required().iter().filter(|t| self.is_open(t))
     }
 
@@ -45,33 +45,35 @@ impl State {
         self.open().filter(|t| !is_live(t.test))
     }
 
-    /// Puts a test behind all others.
-    pub(super) fn pass_over(&mut self, target: Target) {
-        self.passed.retain(|t| *t != target);
+    /// Puts a test behind the others of its stage; the second time, or for a fault that has to be
+    /// put right first, behind all others.
+    pub(super) fn pass_over(&mut self, target: Target, fault: bool) {
+        let before = self.passed.iter().position(|(t, _)| *t == target);
+        let last = fault || before.is_some();
+        if let Some(at) = before {
+            self.passed.remove(at);
+        }
         if self.called.as_ref() == Some(&target) {
             self.called = None;
         }
-        self.passed.push(target);
+        self.passed.push((target, last));
     }
 
     pub(super) fn next_target(&self) -> Option<Target> {
         if let Some(called) = &self.called {
             return Some(called.clone());
         }
-        // Live tests come only when no dead one is left: `rank` puts them last.
         let here = (self.here.stage, self.here.board.clone(), self.here.circuit);
         self.open()
             .min_by_key(|target| {
                 let (stage, board, circuit) = group(target);
-                (
-                    is_live(target.test),
-                    // Passed over: last, the longest ago first.
-                    self.passed
-                        .iter()
-                        .position(|t| t == *target)
-                        .map_or(0, |at| at + 1),
-                    (Some(stage), board, circuit) != here,
-                )
+                let passed = self.passed.iter().position(|(t, _)| t == *target);
+                let behind_all = passed.is_some_and(|at| self.passed[at].1);
+                let elsewhere = passed.is_some() || (Some(stage), board, circuit) != here;
+                // Live tests only when no dead one is left; the place in hand first; then stage by
+                // stage, what was passed over longest ago first. The order of the list does the
+                // rest.
+                (is_live(target.test), behind_all, elsewhere, stage, passed)
             })
             .cloned()
     }
@@ -163,10 +165,12 @@ impl State {
     }
 
     /// Stages of circuits that can be closed now and are not yet.
-    fn closable(&self) -> Option<Vec<Group>> {
+    fn closable(&mut self) -> Option<Vec<Group>> {
         // A stage closes when its last test is in and its last work out: it is enough to look at
-        // the place where the tester has just been, and everywhere when a session begins.
+        // the place where the tester has just been, and everywhere when a work came out or a
+        // session begins.
         let last = self.trail.last().map(|t| (t.board.clone(), t.circuit));
+        let last = last.filter(|_| !std::mem::take(&mut self.look_everywhere));
         let mut groups: Vec<Group> = self
             .setup
             .required()
@@ -186,22 +190,13 @@ impl State {
     fn may_close(&self, at: &Group) -> bool {
         let (_, board, circuit) = at;
         let open = self.open().any(|target| group(target) == *at);
-        let works = self.standing.works_in.iter().any(|work| {
-            (&work.board, work.circuit) == (board, *circuit) && !self.needed_later(at, work)
-        });
+        let here = |work: &Work| (&work.board, work.circuit) == (board, *circuit);
+        let works = self.standing.works_in.iter().any(here);
         let charged = match (board, circuit) {
             (Some(board), Some(circuit)) => self.charged.contains(&(board.clone(), *circuit)),
             _ => false,
         };
         !open && !works && !charged
-    }
-
-    /// A work that stays in for the next stage at the same place (loads out, for one).
-    fn needed_later(&self, at: &Group, work: &Work) -> bool {
-        self.setup.needing(work).any(|target| {
-            let (stage, board, circuit) = group(target);
-            stage != at.0 && (&board, circuit) == (&at.1, at.2) && self.is_open(target)
-        })
     }
 
     /// Closing up, board by board, once the dead tests are through; `None` when all is closed.

@@ -123,7 +123,11 @@ impl State {
             }
             _ => return false,
         };
-        self.note("Say the next digit, point, or done.");
+        self.note("Say the next digit, point, or affirm.");
+        // A second point cannot belong to the same figure: the tester began again.
+        if digits.contains('.') && self.drafts.get(&target).is_some_and(|d| d.contains('.')) {
+            self.drafts.remove(&target);
+        }
         for digit in digits.chars() {
             let key = match digit {
                 '.' => Key::Point,
@@ -144,14 +148,16 @@ impl State {
     /// Not understood. Twice in a row at a reading: another way is offered.
     pub(super) fn missed(&mut self, why: &str, out: &mut Vec<Effect>) {
         let mut text = format!("Not understood: {why}");
+        let mut spoken = super::utter::AGAIN;
         if let Some(Prompt::Ask(ask)) = self.stack.first_mut() {
             ask.misses = ask.misses.saturating_add(1);
             if ask.misses >= 2 {
                 text = "Not understood. Type it, or say: digit by digit.".into();
+                spoken = super::utter::ANOTHER_WAY;
             }
         }
-        self.refuse(text.clone(), out);
-        out.push(Effect::Say(text));
+        self.refuse(text, out);
+        out.push(Effect::Say(spoken.into()));
     }
 
     fn ambiguous(&mut self, several: Vec<Meaning>, how: &How, out: &mut Vec<Effect>) {

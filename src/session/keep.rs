@@ -135,6 +135,7 @@ impl State {
             }
             Record::WorkOut { work, .. } => {
                 self.left_in.remove(work);
+                self.look_everywhere = true;
                 self.note(format!("Off the list: {}.", work.kind.words()));
             }
             Record::Incident { .. } | Record::Note { .. } => return false,
@@ -145,7 +146,7 @@ impl State {
 
     fn done_with(&mut self, target: &Target) {
         self.drafts.remove(target);
-        self.passed.retain(|t| t != target);
+        self.passed.retain(|(t, _)| t != target);
         if self.called.as_ref() == Some(target) {
             self.called = None;
         }
@@ -169,7 +170,7 @@ impl State {
         ));
         for target in again {
             // It is not the next thing to do: the fault has to be put right first.
-            self.pass_over(target.clone());
+            self.pass_over(target.clone(), true);
             self.queue(Record::Repeat { target, because });
         }
     }

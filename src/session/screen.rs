@@ -273,7 +273,7 @@ fn base(state: &State, view: &mut View) {
                 }
                 .into();
                 view.say = if ask.by_digit {
-                    "one digit, point, done, disregard"
+                    "one digit, point, affirm, disregard"
                 } else {
                     "the reading, say again, next, skip"
                 }

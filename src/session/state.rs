@@ -127,8 +127,9 @@ pub struct State {
     pub(super) here: Here,
     /// The test called by name; done before the next in order.
     pub(super) called: Option<Target>,
-    /// Tests passed over in this session, the longest ago first: they come last.
-    pub(super) passed: Vec<Target>,
+    /// Tests passed over in this session, the longest ago first; true: behind all others, false:
+    /// behind the others of their stage.
+    pub(super) passed: Vec<(Target, bool)>,
     /// Works the tester said are still in: asked again later, not at every step.
     pub(super) left_in: BTreeSet<Work>,
     /// Circuits that may hold a charge from an insulation test.
@@ -144,6 +145,8 @@ pub struct State {
     pub(super) awaiting: bool,
     /// The step of the work changes once the last pending record is kept.
     pub(super) move_on: bool,
+    /// A work came out: stages may close elsewhere than where the tester is.
+    pub(super) look_everywhere: bool,
     /// Events that came while waiting for the journal.
     pub(super) held: VecDeque<Event>,
     pub(super) ear: EarState,
@@ -194,6 +197,7 @@ pub fn begin(setup: Setup, standing: Standing) -> (State, Vec<Effect>) {
         pending: VecDeque::new(),
         awaiting: false,
         move_on: false,
+        look_everywhere: false,
         held: VecDeque::new(),
         ear,
         level: 0,

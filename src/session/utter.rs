@@ -1,7 +1,9 @@
-//! What is said aloud at each prompt, and the words used on the screen for places and tests.
+//! What is said aloud at each prompt, and the words of the screen: places, tests, works, ranges,
+//! verdicts, the keys and the menu.
 //!
-//! Short and plain, the question last: a tester on a step-ladder hears the value first. It leaves
-//! out how a text becomes sound.
+//! Short and plain, the question last: a tester on a step-ladder hears the value first. The sentences
+//! said aloud have recorded phrases (`src/voice/clips/phrases.txt`); nothing rests on colour. It
+//! leaves out how a text becomes sound and how a screen is laid out (`screen`).
 
 use crate::{
     domain::{
@@ -22,6 +24,15 @@ use super::{
 /// What the tester acknowledges after an insulation test.
 pub(super) const DISCHARGED: &str =
     "Probes held on until discharged; no voltage left (below 50 V) before anybody touches it.";
+
+/// Said when two hearings in a row were not right.
+pub(super) const ANOTHER_WAY: &str = "Not understood. Type it, or say: digit by digit.";
+
+/// Said when one hearing was not understood.
+pub(super) const AGAIN: &str = "Not understood.";
+
+/// Said when digits are taken one at a time.
+pub(super) const BY_DIGIT: &str = "One digit at a time, then done.";
 
 /// The keys, for the help page; six lines a page, 38 columns at most.
 pub(super) const HELP: [&str; 24] = [
@@ -71,7 +82,7 @@ pub(super) fn context_of(prompt: &Prompt) -> Context {
             DeadStep::Number => Context::All,
             _ => Context::Gate,
         },
-        Prompt::Ask(ask) if ask.by_digit => Context::All,
+        Prompt::Ask(ask) if ask.by_digit => Context::Digits,
         Prompt::Ask(ask) => match ask.target.test.unit() {
             None => Context::Tick,
             Some(Unit::Ohm) => Context::Ohms,
@@ -342,6 +353,7 @@ pub(super) fn control_text(control: &Control) -> String {
             format!("correction {}", super::entry::meaning_text(inner))
         }
         Control::Correction(None) => "correction".into(),
+        Control::Digits(digits) => digits.clone(),
         plain => plain.word().replace('-', " "),
     }
 }

@@ -6,6 +6,10 @@
 #[must_use]
 pub fn wrap(text: &str, width: usize) -> Vec<String> {
     let width = width.max(1);
+    // What fits stays as it is, so that columns of keys keep their places.
+    if text.trim_end().chars().count() <= width {
+        return vec![text.trim_end().into()];
+    }
     let mut lines = Vec::new();
     let mut line = String::new();
     for word in text.split_whitespace() {

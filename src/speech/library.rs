@@ -11,7 +11,7 @@ use super::{
 };
 
 /// The files under `grammars/`: a file a context, and the files they share.
-const FILES: [(&str, &str); 16] = [
+const FILES: [(&str, &str); 17] = [
     ("ohms.abnf", include_str!("../../grammars/ohms.abnf")),
     (
         "insulation.abnf",
@@ -26,6 +26,7 @@ const FILES: [(&str, &str); 16] = [
     ),
     ("pick.abnf", include_str!("../../grammars/pick.abnf")),
     ("gate.abnf", include_str!("../../grammars/gate.abnf")),
+    ("digits.abnf", include_str!("../../grammars/digits.abnf")),
     ("all.abnf", include_str!("../../grammars/all.abnf")),
     ("numbers.abnf", include_str!("../../grammars/numbers.abnf")),
     ("units.abnf", include_str!("../../grammars/units.abnf")),

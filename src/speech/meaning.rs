@@ -54,6 +54,8 @@ pub enum Control {
     LinkOut,
     /// Say the value one digit at a time.
     DigitByDigit,
+    /// Part of a figure, where it is said digit by digit: digits and the point, such as `5` or `.`.
+    Digits(String),
     Stop,
     /// Take up this test now.
     Test(TestKind),
@@ -125,6 +127,7 @@ impl Control {
             Control::LinkIn => "link-in",
             Control::LinkOut => "link-out",
             Control::DigitByDigit => "digit-by-digit",
+            Control::Digits(_) => "digits",
             Control::Stop => "stop",
             Control::Test(_) => "test",
             Control::Stage(_) => "stage",
@@ -202,13 +205,15 @@ pub enum Context {
     Pick,
     /// Safety reminders and gates: done, negative.
     Gate,
+    /// A figure digit by digit: a digit or the point at a time.
+    Digits,
     /// Anything: all of the above (the default of `hear`).
     All,
 }
 
 impl Context {
     /// Every context.
-    pub const EVERY: [Context; 9] = [
+    pub const EVERY: [Context; 10] = [
         Context::Ohms,
         Context::Insulation,
         Context::Live,
@@ -217,6 +222,7 @@ impl Context {
         Context::Question,
         Context::Pick,
         Context::Gate,
+        Context::Digits,
         Context::All,
     ];
 
@@ -232,6 +238,7 @@ impl Context {
             Context::Question => "question",
             Context::Pick => "pick",
             Context::Gate => "gate",
+            Context::Digits => "digits",
             Context::All => "all",
         }
     }

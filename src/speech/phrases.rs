@@ -202,6 +202,9 @@ const SHOWN: usize = 5;
 fn why_left(words: &[&str], understood: usize, next: &[String], whole: bool) -> String {
     let so_far = words[..understood].join(" ");
     match words.get(understood) {
+        Some(&"minus") if understood == 0 => {
+            "a figure below zero is a null left over from other leads: null again".into()
+        }
         Some(word) if understood == 0 => format!("no phrase of this prompt begins with \"{word}\""),
         Some(word) if ["zero", "nought"].contains(&so_far.as_str()) && digit(word) => {
             format!("after \"{so_far}\" say the point: \"{so_far} point {word}\"")

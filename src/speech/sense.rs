@@ -18,7 +18,7 @@ use super::{
 /// What the tags say so far.
 #[derive(Default)]
 struct Draft {
-    texts: [String; 7],
+    texts: [String; 8],
     bound: Option<Bound>,
     unit: Option<Unit>,
     own: Option<String>,
@@ -70,6 +70,9 @@ impl Draft {
         }
         if let Some(n) = self.text(Slot::Pick).and_then(|n| n.parse().ok()) {
             return Ok(Some(Meaning::Reply(Reply::Pick(n))));
+        }
+        if let Some(digits) = self.text(Slot::Digits) {
+            return Ok(Some(Meaning::Control(Control::Digits(digits.into()))));
         }
         let place = self.place()?;
         if place != Place::default() {

@@ -13,7 +13,7 @@
 //! | `unit:ohm` | a unit, by its word in files |
 //! | `board` `circuit` `line` `point` | opens that slot of a place |
 //! | `own:boiler house` | a name of the job's own |
-//! | `reason` `pick` | opens the slot of a reason code or of the n-th of a pick list |
+//! | `reason` `pick` `digits` | opens the slot of a reason code, the n-th of a list, part of a figure |
 //! | `reply:affirm` `control:back` | a reply or command without parts |
 //! | `test:r1r2` `stage:insulation` | takes up a test or a stage |
 //! | `correction` | what follows replaces the last value |
@@ -63,6 +63,7 @@ pub enum Slot {
     Point,
     Reason,
     Pick,
+    Digits,
 }
 
 impl Tag {
@@ -100,6 +101,7 @@ impl Tag {
             "point" => Tag::Slot(Slot::Point),
             "reason" => Tag::Slot(Slot::Reason),
             "pick" => Tag::Slot(Slot::Pick),
+            "digits" => Tag::Slot(Slot::Digits),
             _ => {
                 let plain = |c: char| c.is_ascii_digit() || c.is_ascii_uppercase() || c == '.';
                 if text.is_empty() || !text.chars().all(plain) {

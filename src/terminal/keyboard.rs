@@ -20,6 +20,7 @@ use crossterm::{
     execute,
     terminal::{self, EnterAlternateScreen, LeaveAlternateScreen},
 };
+use rustix::event::{PollFd, PollFlags, Timespec, poll};
 use signal_hook::{
     consts::{SIGCONT, SIGHUP, SIGTERM, SIGTSTP},
     flag,
@@ -114,6 +115,8 @@ pub struct Keyboard {
     began: Instant,
     ticked: Duration,
     entered: Option<Instant>,
+    /// Something was read just now: there may be more.
+    more: bool,
     /// The terminal must be drawn anew.
     redraw: bool,
 }
@@ -129,6 +132,7 @@ impl Keyboard {
             began: Instant::now(),
             ticked: Duration::ZERO,
             entered: None,
+            more: false,
             redraw: false,
         }
     }
@@ -155,8 +159,16 @@ impl Keyboard {
             if let Some(event) = self.ear.as_ref().and_then(|ear| ear.try_recv().ok()) {
                 return Some(event);
             }
-            match event::poll(WAIT) {
+            // The wait is ours: a terminal that hung up must not be read, its reader never returns.
+            let wait = if self.more { Duration::ZERO } else { WAIT };
+            if hung_up_within(wait) {
+                return Some(Event::Stop(StopCause::HangUp));
+            }
+            self.more = false;
+            match event::poll(Duration::ZERO) {
                 Ok(true) => {
+                    // Several keys may have come at once; the next need not wait.
+                    self.more = true;
                     if let Some(event) = self.read() {
                         return event;
                     }
@@ -187,7 +199,10 @@ impl Keyboard {
                     return Some(Some(Event::Redraw));
                 }
                 let key = self.keymap.key(key.code, key.modifiers)?;
-                if key == Key::Enter && self.is_held() {
+                if key != Key::Enter {
+                    // Another key in between: the next enter is a new press.
+                    self.entered = None;
+                } else if self.is_held() {
                     return None;
                 }
                 Some(Some(Event::Key(key)))
@@ -214,6 +229,19 @@ impl Keyboard {
         let _ = execute!(io::stdout(), EnterAlternateScreen, cursor::Hide);
         self.redraw = true;
     }
+}
+
+/// Waits for keys at standard input; whether the terminal is gone.
+fn hung_up_within(wait: Duration) -> bool {
+    let stdin = rustix::stdio::stdin();
+    let mut polled = [PollFd::new(&stdin, PollFlags::IN)];
+    let wait = Timespec {
+        tv_sec: wait.as_secs().try_into().unwrap_or_default(),
+        tv_nsec: wait.subsec_nanos().into(),
+    };
+    let gone = PollFlags::HUP | PollFlags::ERR | PollFlags::NVAL;
+    // A signal that interrupts the wait is looked at by whoever called.
+    poll(&mut polled, Some(&wait)).is_ok() && polled[0].revents().intersects(gone)
 }
 
 fn millis(time: Duration) -> u64 {

@@ -100,7 +100,9 @@ impl Hearing {
     /// # Errors
     /// [`RecogniserError`].
     pub fn prepare(&self, context: Context) -> Result<(), RecogniserError> {
-        self.recogniser.prepare(ANYTHING)?;
+        if self.recogniser.has(ANYTHING) {
+            self.recogniser.prepare(ANYTHING)?;
+        }
         self.recogniser.prepare(context.name())
     }
 
@@ -109,6 +111,9 @@ impl Hearing {
     /// # Errors
     /// [`RecogniserError`].
     pub fn fit(&self, context: Context, utterance: &Utterance) -> Result<Fit, RecogniserError> {
+        if !self.recogniser.has(ANYTHING) {
+            return self.fit_by_garbage_word(context, utterance);
+        }
         let anything = self.recogniser.decode(ANYTHING, &utterance.samples)?;
         let mut anything = anything.into_iter().next().unwrap_or(Way {
             words: String::new(),
@@ -129,6 +134,25 @@ impl Hearing {
         let best = fit.ways.first().map_or("", |way| way.words.as_str());
         fit.grammar = cost(&self.graph(context), best).unwrap_or_default();
         Ok(fit)
+    }
+
+    /// An adopted model has no measure of any sounds; its garbage word competes in the grammar.
+    fn fit_by_garbage_word(
+        &self,
+        context: Context,
+        utterance: &Utterance,
+    ) -> Result<Fit, RecogniserError> {
+        let ways = self.recogniser.decode(context.name(), &utterance.samples)?;
+        let cost = ways.first().map_or(0.0, |way| way.cost);
+        Ok(Fit {
+            ways,
+            grammar: 0.0,
+            anything: Way {
+                words: String::new(),
+                cost,
+            },
+            seconds: utterance.seconds(),
+        })
     }
 
     /// What an utterance means in a context.

@@ -77,6 +77,14 @@ impl Recogniser {
         })
     }
 
+    /// Whether the voice has a context of that name.
+    #[must_use]
+    pub fn has(&self, context: &str) -> bool {
+        context_folder(&self.folder, context)
+            .join("graph/Gr.fst")
+            .is_file()
+    }
+
     /// Opens a context's model ahead of its first use.
     ///
     /// # Errors

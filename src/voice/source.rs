@@ -3,6 +3,7 @@
 //! It promises that a broken recording is told about in one line and that what could be read of it
 //! is still delivered. It leaves out every treatment of the sound (`front`).
 
+pub mod microphone;
 pub mod wav;
 
 /// What a source gave.
@@ -19,7 +20,7 @@ pub enum Piece {
 }
 
 /// A source of sound.
-pub trait Source: Send {
+pub trait Source {
     /// Its rate in hertz.
     fn rate(&self) -> u32;
     /// The next piece; waits a tenth of a second at the most.

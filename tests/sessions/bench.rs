@@ -11,12 +11,17 @@ use handsfull::{
 };
 
 /// A session with everything it has kept.
+#[allow(dead_code)] // not every test looks at everything
 pub struct Bench {
-    pub state: State,
+    state: Option<State>,
+    /// The journal refuses the next records, as many as this.
+    pub refusals: usize,
     pub records: Vec<Record>,
     pub said: Vec<String>,
     pub quit: bool,
     pub text: String,
+    /// No transcript is written.
+    pub mute: bool,
     transcript: Transcript,
 }
 
@@ -37,15 +42,34 @@ impl Bench {
     pub fn with(setup: Setup, standing: Standing) -> Self {
         let (state, effects) = session::begin(setup, standing);
         let mut bench = Self {
-            state,
+            state: Some(state),
+            refusals: 0,
             records: Vec::new(),
             said: Vec::new(),
             quit: false,
             text: String::new(),
+            mute: false,
             transcript: Transcript::new(40),
         };
         bench.carry_out(effects);
         bench.show(&Event::Redraw);
+        bench
+    }
+
+    /// Like [`Bench::with`], without a transcript, going on with the records of an earlier session.
+    pub fn with_muted(setup: Setup, standing: Standing, records: Vec<Record>) -> Self {
+        let (state, effects) = session::begin(setup, standing);
+        let mut bench = Self {
+            state: Some(state),
+            refusals: 0,
+            records,
+            said: Vec::new(),
+            quit: false,
+            text: String::new(),
+            mute: true,
+            transcript: Transcript::new(40),
+        };
+        bench.carry_out(effects);
         bench
     }
 
@@ -54,21 +78,39 @@ impl Bench {
         while let Some(effect) = waiting.pop_front() {
             match effect {
                 Effect::Keep(record) => {
-                    self.records.push(*record);
-                    let no = self.records.len() as u64;
-                    let (state, more) = session::step(self.state.clone(), Event::Kept(no));
-                    self.state = state;
-                    waiting.extend(more);
+                    let answer = if self.refusals > 0 {
+                        self.refusals -= 1;
+                        Event::NotKept("the disk is full".into())
+                    } else {
+                        self.records.push(*record);
+                        Event::Kept(self.records.len() as u64)
+                    };
+                    waiting.extend(self.step(answer));
                 }
-                Effect::Say(text) => self.said.push(text),
+                Effect::Say(text) if !self.mute => self.said.push(text),
                 Effect::Quit => self.quit = true,
                 _ => {}
             }
         }
     }
 
+    fn step(&mut self, event: Event) -> Vec<Effect> {
+        let state = self.state.take().expect("a state between steps");
+        let (state, effects) = session::step(state, event);
+        self.state = Some(state);
+        effects
+    }
+
+    pub fn state(&self) -> &State {
+        self.state.as_ref().expect("a state between steps")
+    }
+
     fn show(&mut self, event: &Event) {
-        for line in self.transcript.state(&self.state, event) {
+        if self.mute {
+            return;
+        }
+        let state = self.state.as_ref().expect("a state between steps");
+        for line in self.transcript.state(state, event) {
             self.text.push_str(&line);
             self.text.push('\n');
         }
@@ -76,12 +118,13 @@ impl Bench {
 
     /// Takes one event.
     pub fn take(&mut self, event: Event) {
-        for line in self.transcript.event(&event) {
-            self.text.push_str(&line);
-            self.text.push('\n');
+        if !self.mute {
+            for line in self.transcript.event(&event) {
+                self.text.push_str(&line);
+                self.text.push('\n');
+            }
         }
-        let (state, effects) = session::step(self.state.clone(), event.clone());
-        self.state = state;
+        let effects = self.step(event.clone());
         self.carry_out(effects);
         self.show(&event);
     }
@@ -101,7 +144,7 @@ impl Bench {
 
     /// Words as heard in the context of the prompt.
     pub fn say(&mut self, words: &str) {
-        let meaning = handsfull::speech::understand(self.state.context(), words);
+        let meaning = handsfull::speech::understand(self.state().context(), words);
         self.hear(words, meaning);
     }
 
@@ -122,7 +165,7 @@ impl Bench {
     /// number of presses.
     pub fn to_reading(&mut self) -> usize {
         for presses in 0..200 {
-            match self.state.top() {
+            match self.state().top() {
                 Prompt::Ask(_) | Prompt::Finish => return presses,
                 Prompt::Dead(dead) if dead.method.is_none() => {
                     self.take(Event::Key(Key::Digit(1)));

@@ -6,7 +6,7 @@
 //!
 //! | key | of | holds |
 //! |---|---|---|
-//! | `value` | readings, corrections, picks, reasons | `0.50`, `299`; the number of a pick or reason |
+//! | `value` | readings, corrections, picks, reasons, digits | `0.50`, `299`; the number; the digits |
 //! | `unit` | readings | `ohm`, `milliohm`, `megohm`, ...; absent when not said |
 //! | `bound` | readings | `exact`, `above`, `below`, `open`, `over-range` |
 //! | `board` `circuit` `line` `point` `name` | places | `DB1`, `15` or `4L2`, `L2`, `3`, a name of the job |
@@ -107,6 +107,7 @@ fn describe(object: &mut Object, meaning: &Meaning) {
                 Control::Test(test) => put(object, "test", test.word()),
                 Control::Stage(stage) => put(object, "stage", stage_word(*stage)),
                 Control::Reason(n) => put(object, "value", n.to_string()),
+                Control::Digits(digits) => put(object, "value", digits.as_str()),
                 _ => {}
             }
         }

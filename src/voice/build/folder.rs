@@ -284,7 +284,7 @@ fn copy(from: &Path, to: &Path) -> Result<(), FolderError> {
     Ok(())
 }
 
-fn put(path: &Path, bytes: &[u8]) -> Result<(), FolderError> {
+pub(crate) fn put(path: &Path, bytes: &[u8]) -> Result<(), FolderError> {
     let made = path.parent().map_or(Ok(()), fs::create_dir_all);
     made.and_then(|()| fs::write(path, bytes))
         .map_err(|source| FolderError::Write {

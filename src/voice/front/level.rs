@@ -4,6 +4,8 @@
 //! shout into it are brought there. Digital silence wrecks it, so a little noise, always the same,
 //! is mixed in. It promises the same samples for the same sound.
 
+use super::Steps;
+
 /// Level of the loudest tenth of a second that an utterance is brought to, in dBFS.
 const TARGET: f32 = -16.0;
 /// Most that is amplified, in dB: beyond, there is only noise to amplify.
@@ -37,8 +39,14 @@ pub fn loudest(sound: &[f32]) -> f32 {
 
 /// The utterance as the recogniser is given it: level set, noise mixed in, noise around it.
 #[must_use]
-pub fn normalised(sound: &[f32]) -> Vec<i16> {
-    let gain = 10_f32.powf((TARGET - loudest(sound)).min(MOST) / 20.0);
+pub fn normalised(sound: &[f32], steps: Steps) -> Vec<i16> {
+    let decibels = if steps.level {
+        (TARGET - loudest(sound)).min(MOST)
+    } else {
+        0.0
+    };
+    let gain = 10_f32.powf(decibels / 20.0);
+    let floor = if steps.noise { FLOOR } else { 0.0 };
     let mut noise = Noise::new();
     let silence = std::iter::repeat_n(&0.0_f32, MARGIN);
     silence
@@ -46,7 +54,7 @@ pub fn normalised(sound: &[f32]) -> Vec<i16> {
         .chain(sound)
         .chain(silence)
         .map(|x| {
-            let sample = x * gain * 32_767.0 + noise.next() * FLOOR;
+            let sample = x * gain * 32_767.0 + noise.next() * floor;
             sample.round().clamp(-32_768.0, 32_767.0) as i16
         })
         .collect()
@@ -106,7 +114,7 @@ mod tests {
         let sound: Vec<f32> = (0..16_000).map(|n| (n as f32 * 0.1).sin()).collect();
         let at = |gain: f32| {
             let scaled: Vec<f32> = sound.iter().map(|x| x * gain).collect();
-            let out = normalised(&scaled);
+            let out = normalised(&scaled, Steps::default());
             let back: Vec<f32> = out.iter().map(|x| f32::from(*x) / 32_768.0).collect();
             loudest(&back)
         };
@@ -117,7 +125,7 @@ mod tests {
 
     #[test]
     fn silence_becomes_the_floor_and_no_more() {
-        let out = normalised(&[0.0; 1_600]);
+        let out = normalised(&[0.0; 1_600], Steps::default());
         assert_eq!(out.len(), 1_600 + 2 * MARGIN);
         let power = out.iter().map(|x| f32::from(*x).powi(2)).sum::<f32>() / out.len() as f32;
         assert!((power.sqrt() - FLOOR).abs() < 0.5, "{}", power.sqrt());

@@ -37,14 +37,35 @@ pub struct Utterance {
     pub clip: Vec<i16>,
 }
 
+/// Which steps are taken; all of them unless it is being measured what each is worth.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Steps {
+    /// Rumble is filtered out.
+    pub high_pass: bool,
+    /// The level is set.
+    pub level: bool,
+    /// A little noise is mixed in, and put around.
+    pub noise: bool,
+}
+
+impl Default for Steps {
+    fn default() -> Self {
+        Self {
+            high_pass: true,
+            level: true,
+            noise: true,
+        }
+    }
+}
+
 impl Utterance {
-    fn of(sound: &[f32]) -> Self {
+    fn of(sound: &[f32], steps: Steps) -> Self {
         let clip = sound
             .iter()
             .map(|x| (x * 32_767.0).round().clamp(-32_768.0, 32_767.0) as i16)
             .collect();
         Self {
-            samples: level::normalised(sound),
+            samples: level::normalised(sound, steps),
             clip,
         }
     }
@@ -66,6 +87,7 @@ pub struct Front {
     high_pass: HighPass,
     activity: Activity,
     listening: Listening,
+    steps: Steps,
     tenth: Vec<f32>,
     recent: VecDeque<f32>,
     work: Vec<f32>,
@@ -74,6 +96,8 @@ pub struct Front {
 #[derive(Debug)]
 enum Listening {
     Open,
+    /// Open until one utterance is over.
+    Once,
     /// Waiting for the key.
     Idle,
     /// The key is down; the sound since.
@@ -90,16 +114,32 @@ impl Front {
             high_pass: HighPass::new(RATE),
             activity: Activity::new(settings),
             listening: Listening::Open,
+            steps: Steps::default(),
             tenth: Vec::new(),
             recent: VecDeque::new(),
             work: Vec::new(),
         })
     }
 
+    /// Leaves steps out, to measure what they are worth.
+    #[must_use]
+    pub fn with(mut self, steps: Steps) -> Self {
+        self.steps = steps;
+        self
+    }
+
     /// Open listening, or only while the key is held.
     pub fn hold_to_talk(&mut self, on: bool) {
         self.activity.forget();
         self.listening = if on { Listening::Idle } else { Listening::Open };
+    }
+
+    /// Listens to one utterance; only with hold-to-talk, and while the key is not down.
+    pub fn once(&mut self) {
+        if matches!(self.listening, Listening::Idle) {
+            self.activity.forget();
+            self.listening = Listening::Once;
+        }
     }
 
     /// The key went down (only with hold-to-talk).
@@ -116,7 +156,7 @@ impl Front {
         if let Listening::Held(sound) = &mut self.listening {
             let sound = std::mem::take(sound);
             self.listening = Listening::Idle;
-            events.push(held(&sound));
+            events.push(held(&sound, self.steps));
         }
     }
 
@@ -156,7 +196,8 @@ impl Front {
         self.resampler.finish(&mut work);
         self.take(&mut work, events);
         self.release(events);
-        events.extend(self.activity.finish().map(event));
+        let steps = self.steps;
+        events.extend(self.activity.finish().map(|cut| event(cut, steps)));
     }
 
     fn take(&mut self, sound: &mut [f32], events: &mut Vec<FrontEvent>) {
@@ -168,7 +209,9 @@ impl Front {
                 0.0
             };
         }
-        self.high_pass.run(sound);
+        if self.steps.high_pass {
+            self.high_pass.run(sound);
+        }
         for sample in sound.iter() {
             self.tenth.push(*sample);
             if self.tenth.len() == 10 * FRAME {
@@ -177,10 +220,15 @@ impl Front {
             }
         }
         match &mut self.listening {
-            Listening::Open => {
+            Listening::Open | Listening::Once => {
                 let mut cuts = Vec::new();
                 self.activity.push(sound, &mut cuts);
-                events.extend(cuts.into_iter().map(event));
+                let ended = cuts.iter().any(|cut| matches!(cut, Cut::Ended(_)));
+                let steps = self.steps;
+                events.extend(cuts.into_iter().map(|cut| event(cut, steps)));
+                if ended && matches!(self.listening, Listening::Once) {
+                    self.listening = Listening::Idle;
+                }
             }
             Listening::Idle => {
                 self.recent.extend(sound.iter());
@@ -192,23 +240,23 @@ impl Front {
                 if held_sound.len() > LONGEST * FRAME {
                     let whole = std::mem::take(held_sound);
                     self.listening = Listening::Idle;
-                    events.push(held(&whole));
+                    events.push(held(&whole, self.steps));
                 }
             }
         }
     }
 }
 
-fn event(cut: Cut) -> FrontEvent {
+fn event(cut: Cut, steps: Steps) -> FrontEvent {
     match cut {
         Cut::Began => FrontEvent::Began,
         Cut::Dropped => FrontEvent::Dropped,
-        Cut::Ended(sound) => FrontEvent::Utterance(Utterance::of(&sound)),
+        Cut::Ended(sound) => FrontEvent::Utterance(Utterance::of(&sound, steps)),
     }
 }
 
 /// A held key says where speech is, but not that there is any: silence is still nothing.
-fn held(sound: &[f32]) -> FrontEvent {
+fn held(sound: &[f32], steps: Steps) -> FrontEvent {
     let settings = Settings::default();
     let voiced = sound
         .chunks(FRAME)
@@ -217,7 +265,7 @@ fn held(sound: &[f32]) -> FrontEvent {
     if voiced < settings.least {
         FrontEvent::Dropped
     } else {
-        FrontEvent::Utterance(Utterance::of(sound))
+        FrontEvent::Utterance(Utterance::of(sound, steps))
     }
 }
 
@@ -258,6 +306,20 @@ mod tests {
             })
             .collect();
         assert_eq!(found, [0.75]); // a quarter of a second from before the key
+    }
+
+    #[test]
+    fn one_utterance_can_be_asked_for() {
+        let mut front = Front::new(RATE, Settings::default()).expect("16 kHz");
+        front.hold_to_talk(true);
+        let mut events = Vec::new();
+        let said = [tone(60, 0.3), vec![0.0; 32_000]].concat();
+        front.push(&said, &mut events);
+        assert_eq!(utterances(&events), 0);
+        front.once();
+        front.push(&said, &mut events);
+        front.push(&said, &mut events);
+        assert_eq!(utterances(&events), 1);
     }
 
     #[test]

@@ -11,7 +11,10 @@ pub mod tone;
 
 use std::{
     collections::VecDeque,
-    sync::{Arc, Mutex, MutexGuard, PoisonError},
+    sync::{
+        Arc, Mutex, MutexGuard, PoisonError,
+        atomic::{AtomicBool, Ordering},
+    },
 };
 
 use cpal::{
@@ -42,6 +45,7 @@ struct Queue {
 /// A loudspeaker.
 pub struct Speaker {
     queue: Arc<Mutex<Queue>>,
+    mouth: Arc<AtomicBool>,
     voice: Prompter,
     // Sound stops when it is dropped.
     _stream: cpal::Stream,
@@ -92,9 +96,11 @@ impl Speaker {
     /// [`SpeakerError`] with the device's own reason.
     pub fn open(volume: f32) -> Result<Self, SpeakerError> {
         let queue = Arc::new(Mutex::new(Queue::default()));
-        let stream = quietly(|| open(&queue)).map_err(SpeakerError)?;
+        let mouth = Arc::new(AtomicBool::new(false));
+        let stream = quietly(|| open(&queue, &mouth)).map_err(SpeakerError)?;
         Ok(Self {
             queue,
+            mouth,
             voice: Prompter::new(volume),
             _stream: stream,
         })
@@ -110,6 +116,8 @@ impl Speaker {
         let mut queue = self.queue();
         queue.samples.clear();
         queue.samples.extend(samples);
+        self.mouth
+            .store(!queue.samples.is_empty(), Ordering::Relaxed);
     }
 
     /// Sounds a tone, ahead of what is being said.
@@ -119,6 +127,7 @@ impl Speaker {
         for sample in tone.into_iter().rev() {
             queue.samples.push_front(sample);
         }
+        self.mouth.store(true, Ordering::Relaxed);
     }
 
     /// Plays samples at [`RATE`] after what is being said.
@@ -131,6 +140,12 @@ impl Speaker {
         self.queue().samples.clear();
     }
 
+    /// True while anything sounds, for whoever must not hear it.
+    #[must_use]
+    pub fn mouth(&self) -> Arc<AtomicBool> {
+        Arc::clone(&self.mouth)
+    }
+
     /// Whether anything sounds.
     #[must_use]
     pub fn sounding(&self) -> bool {
@@ -138,7 +153,7 @@ impl Speaker {
     }
 }
 
-fn open(queue: &Arc<Mutex<Queue>>) -> Result<cpal::Stream, String> {
+fn open(queue: &Arc<Mutex<Queue>>, mouth: &Arc<AtomicBool>) -> Result<cpal::Stream, String> {
     let device = cpal::default_host()
         .default_output_device()
         .ok_or("there is no output device")?;
@@ -146,11 +161,11 @@ fn open(queue: &Arc<Mutex<Queue>>) -> Result<cpal::Stream, String> {
     let format = config.sample_format();
     let config: cpal::StreamConfig = config.into();
     let stream = match format {
-        SampleFormat::F32 => run::<f32>(&device, config, queue),
-        SampleFormat::I16 => run::<i16>(&device, config, queue),
-        SampleFormat::I32 => run::<i32>(&device, config, queue),
-        SampleFormat::U16 => run::<u16>(&device, config, queue),
-        SampleFormat::U8 => run::<u8>(&device, config, queue),
+        SampleFormat::F32 => run::<f32>(&device, config, queue, mouth),
+        SampleFormat::I16 => run::<i16>(&device, config, queue, mouth),
+        SampleFormat::I32 => run::<i32>(&device, config, queue, mouth),
+        SampleFormat::U16 => run::<u16>(&device, config, queue, mouth),
+        SampleFormat::U8 => run::<u8>(&device, config, queue, mouth),
         other => return Err(format!("its sample format {other} is not known here")),
     }?;
     stream.play().map_err(|e| e.to_string())?;
@@ -161,13 +176,14 @@ fn run<T>(
     device: &cpal::Device,
     config: cpal::StreamConfig,
     queue: &Arc<Mutex<Queue>>,
+    mouth: &Arc<AtomicBool>,
 ) -> Result<cpal::Stream, String>
 where
     T: SizedSample + FromSample<f32>,
 {
     let channels = usize::from(config.channels).max(1);
     let mut player = Player::new(config.sample_rate);
-    let queue = Arc::clone(queue);
+    let (queue, mouth) = (Arc::clone(queue), Arc::clone(mouth));
     device
         .build_output_stream(
             config,
@@ -177,6 +193,7 @@ where
                     let value = player.next(&mut queue.samples);
                     frame.fill(T::from_sample(value));
                 }
+                mouth.store(!queue.samples.is_empty(), Ordering::Relaxed);
             },
             // A device that goes away falls silent; the screen says everything all the same.
             |_| {},
@@ -228,7 +245,10 @@ mod tests {
             out.push(player.next(&mut queue));
         }
         assert!((4790..=4805).contains(&out.len()), "{}", out.len());
-        let jump = out.windows(2).map(|w| (w[1] - w[0]).abs()).fold(0.0, f32::max);
+        let jump = out
+            .windows(2)
+            .map(|w| (w[1] - w[0]).abs())
+            .fold(0.0, f32::max);
         assert!(jump < 0.02, "{jump}");
     }
 

@@ -72,7 +72,10 @@ fn sentences(text: &str) -> impl Iterator<Item = &str> {
             .char_indices()
             .find(|(at, c)| {
                 matches!(c, '.' | '?' | '!' | ':')
-                    && rest[at + 1..].chars().next().is_none_or(char::is_whitespace)
+                    && rest[at + 1..]
+                        .chars()
+                        .next()
+                        .is_none_or(char::is_whitespace)
             })
             .map_or(rest.len(), |(at, _)| at + 1);
         let (sentence, after) = rest.split_at(end);
@@ -93,7 +96,11 @@ fn words(sentence: &str) -> Vec<String> {
 }
 
 fn push(words: &mut Vec<String>, text: &str) {
-    words.extend(text.split([' ', '-']).filter(|w| !w.is_empty()).map(str::to_owned));
+    words.extend(
+        text.split([' ', '-'])
+            .filter(|w| !w.is_empty())
+            .map(str::to_owned),
+    );
 }
 
 fn say_token(token: &str, words: &mut Vec<String>) {
@@ -196,7 +203,9 @@ fn fixed(token: &str) -> Option<&'static str> {
 
 fn is_board(token: &str) -> bool {
     (1..=8).contains(&token.len())
-        && token.chars().all(|c| c.is_ascii_uppercase() || c.is_ascii_digit())
+        && token
+            .chars()
+            .all(|c| c.is_ascii_uppercase() || c.is_ascii_digit())
         && token.starts_with(|c: char| c.is_ascii_uppercase())
 }
 
@@ -258,7 +267,10 @@ mod tests {
             "zero decimal five eight ohms delta bravo one circuit seven r-one-plus-r-two \
              point three above-the-range affirm",
         );
-        check("Expect: 0.37 to 0.54 Ω", "expect zero decimal three seven to zero decimal five four ohms");
+        check(
+            "Expect: 0.37 to 0.54 Ω",
+            "expect zero decimal three seven to zero decimal five four ohms",
+        );
         check(">999 MΩ", "greater-than nine nine nine megohms");
         check("4L2", "four line two");
     }
@@ -271,7 +283,10 @@ mod tests {
 
     #[test]
     fn a_name_in_a_sentence_is_left_to_the_screen() {
-        check("DB1 Protective bonding water", "delta bravo one protective-bonding");
+        check(
+            "DB1 Protective bonding water",
+            "delta bravo one protective-bonding",
+        );
     }
 
     #[test]

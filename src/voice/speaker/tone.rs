@@ -70,7 +70,10 @@ mod tests {
             assert!(samples.len() <= RATE as usize / 3 + 800, "{tone:?}");
             assert!(samples.iter().all(|s| s.abs() <= 0.25), "{tone:?}");
             for other in Tone::ALL {
-                assert!(tone == other || samples != other.samples(), "{tone:?} {other:?}");
+                assert!(
+                    tone == other || samples != other.samples(),
+                    "{tone:?} {other:?}"
+                );
             }
         }
     }
