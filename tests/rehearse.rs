@@ -53,7 +53,9 @@ fn the_rehearsal_ends_with_a_true_log_and_its_review() {
     }
     let log = std::fs::read_to_string(folder.path().join("quince-lane.log.toml")).expect("a log");
     // Only values that the scripted display showed may stand in the log.
-    let shown = ["0.00", "0.02", "0.25", "0.26", "0.78", "0.46", "0.53", ">999"];
+    let shown = [
+        "0.00", "0.02", "0.25", "0.26", "0.78", "0.46", "0.53", ">999",
+    ];
     let mut kept = 0;
     for line in log.lines().filter_map(|l| l.strip_prefix("value = ")) {
         assert!(shown.contains(&line.trim_matches('"')), "{line}");

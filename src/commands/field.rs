@@ -164,7 +164,11 @@ impl Session {
     }
 
     /// The ear, as the settings and the options want it; without one a line says why.
-    fn ear(&mut self, place: Option<Where>, sound: &mut Sound) -> Result<Option<Receiver<Event>>, Failure> {
+    fn ear(
+        &mut self,
+        place: Option<Where>,
+        sound: &mut Sound,
+    ) -> Result<Option<Receiver<Event>>, Failure> {
         let Some(place) = place else {
             eprintln!("keypad only: no voice is used");
             return Ok(None);

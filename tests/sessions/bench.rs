@@ -163,7 +163,7 @@ impl Bench {
 
     /// Presses enter through gates, proving dead and works until a reading is asked for; gives the
     /// number of presses.
-    pub fn to_reading(&mut self) -> usize {
+    pub fn reach_reading(&mut self) -> usize {
         for presses in 0..200 {
             match self.state().top() {
                 Prompt::Ask(_) | Prompt::Finish => return presses,

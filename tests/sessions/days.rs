@@ -10,7 +10,7 @@ use super::bench::{Bench, job};
 fn play(plan: &str, blocks: &str) -> Bench {
     let mut bench = Bench::new(job(plan));
     for block in blocks.trim().split("\n\n") {
-        bench.to_reading();
+        bench.reach_reading();
         bench.script(block);
     }
     bench
@@ -44,13 +44,13 @@ say: affirm
     );
     // The next test is insulation, and the link is still in: it cannot be passed over.
     bench.script("say: next\n-\n*4\n-\nsay: done");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: greater than two nine nine megohms\nsay: affirm");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: say again\nsay: four eighty\nsay: affirm");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: affirm\nsay: affirm");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: affirm");
     assert!(bench.quit, "{}", bench.text);
     insta::assert_snapshot!("radial", bench.text);
@@ -71,7 +71,7 @@ say: keep as found
 say: zero point seven two
 say: affirm",
     );
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("*3");
     insta::assert_snapshot!("ring", bench.text);
 }
@@ -80,10 +80,10 @@ say: affirm",
 fn tt_with_its_electrode_by_keypad_and_the_live_gate() {
     let mut bench = Bench::new(job(include_str!("jobs/tt.toml")));
     for reading in ["0.00", "0.02", "0.19", "0.40", "200", "200", "", "180"] {
-        bench.to_reading();
+        bench.reach_reading();
         bench.script(&format!("{reading}\n\n"));
     }
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: stop\nsay: affirm");
     insta::assert_snapshot!("tt", bench.text);
 }
@@ -97,19 +97,19 @@ fn three_phase_board_with_circuits_called_by_name() {
 say: way four line two
 -",
     );
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: zero point two two\nsay: correction zero point two one\nsay: affirm");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: zero point two one\nsay: affirm");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: zero point four three\nsay: affirm");
     for _ in 0..7 {
-        bench.to_reading();
+        bench.reach_reading();
         bench.script("+299\n\n");
     }
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: skip\n1");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("say: skip\nsay: reason one");
     insta::assert_snapshot!("three_phase", bench.text);
 }
@@ -135,15 +135,15 @@ say: affirm",
     );
     bench.take(handsfull::session::Event::DeviceLost);
     for _ in 0..2 {
-        bench.to_reading();
+        bench.reach_reading();
         bench.script("+299\n\n");
     }
     bench.take(handsfull::session::Event::DeviceFound);
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("/\n\n");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("\n\n");
-    bench.to_reading();
+    bench.reach_reading();
     bench.script("\n");
     assert!(bench.quit, "{}", bench.text);
     insta::assert_snapshot!("selv", bench.text);

@@ -25,7 +25,7 @@ fn second(bench: &mut Bench, at: u64) -> usize {
         ));
         lines += screen(bench.state(), 40, 15).len();
     }
-    if at % 60 == 0 {
+    if at.is_multiple_of(60) {
         bench.take(Event::Speaking(true));
         bench.take(Event::Speaking(false));
         match at / 60 % 4 {
@@ -42,7 +42,7 @@ fn second(bench: &mut Bench, at: u64) -> usize {
 fn memory_stays_flat_and_steps_quick_over_eight_hours() {
     let mut bench = Bench::new(job(include_str!("../fixtures/workshop.toml")));
     bench.mute = true;
-    bench.to_reading();
+    bench.reach_reading();
     // The first hour fills caches and the allocator's pools.
     let mut lines = 0;
     for at in 0..3_600 {

@@ -143,26 +143,26 @@ fn canonical(automaton: &Automaton) -> Result<Automaton, Trouble> {
     let mut due = VecDeque::new();
     let mut out = Automaton::new();
     if let Some(start) = automaton.start() {
-        numbers[start as usize] = Some(out.add_state());
+        numbers[start] = Some(out.add_state());
         out.set_start(0)?;
         due.push_back(start);
     }
     let mut next_number = 1;
     while let Some(old) = due.pop_front() {
-        let Some(new) = numbers[old as usize] else {
+        let Some(new) = numbers[old] else {
             continue;
         };
         if let Some(weight) = automaton.final_weight(old)? {
             out.set_final(new, round(&weight))?;
         }
         for arc in automaton.get_trs(old)?.trs() {
-            let to = match numbers[arc.nextstate as usize] {
+            let to = match numbers[arc.nextstate] {
                 Some(number) => number,
                 None => {
                     let number = out.add_state();
                     debug_assert_eq!(number, next_number);
                     next_number += 1;
-                    numbers[arc.nextstate as usize] = Some(number);
+                    numbers[arc.nextstate] = Some(number);
                     due.push_back(arc.nextstate);
                     number
                 }
@@ -178,7 +178,10 @@ mod tests {
     use super::*;
     use crate::speech::word_graph::{Arc, State};
 
-    fn graph(states: &[(&[(&str, f32, usize)], Option<f32>)]) -> WordGraph {
+    /// Arcs (word, cost, to) and the cost of stopping.
+    type Drawn<'a> = (&'a [(&'a str, f32, usize)], Option<f32>);
+
+    fn graph(states: &[Drawn<'_>]) -> WordGraph {
         WordGraph {
             start: 0,
             states: states
@@ -206,7 +209,7 @@ mod tests {
             let mut next = Vec::new();
             for (at, sofar) in reached {
                 for arc in automaton.get_trs(at).ok()?.trs() {
-                    if arc.ilabel as usize == id {
+                    if arc.ilabel == id {
                         next.push((arc.nextstate, sofar + arc.weight.value()));
                     }
                 }

@@ -48,7 +48,7 @@ struct Builder {
 
 impl Builder {
     fn state(&mut self) -> usize {
-        self.automaton.add_state() as usize
+        self.automaton.add_state()
     }
 
     fn arc(&mut self, from: usize, input: u32, word: u32, cost: f32, to: usize) {
