@@ -232,7 +232,14 @@ fn compress(samples: &[i16]) -> Result<Vec<u8>, ClipError> {
         .map_err(|e| failed(e.to_string()))?;
     let mut sink = flacenc::bitsink::ByteSink::new();
     stream.write(&mut sink).map_err(|e| failed(e.to_string()))?;
-    Ok(sink.into_inner())
+    let mut bytes = sink.into_inner();
+    // The block sizes of the stream's head leave its last block out (RFC 9639, 8.2); the encoder
+    // counts it in, and a clip that ends in a block under 16 samples would be refused.
+    if let (Ok(size), Some(sizes)) = (u16::try_from(config.block_size), bytes.get_mut(8..12)) {
+        sizes[..2].copy_from_slice(&size.to_be_bytes());
+        sizes[2..].copy_from_slice(&size.to_be_bytes());
+    }
+    Ok(bytes)
 }
 
 /// Mono 16-bit samples out of FLAC bytes.

@@ -111,6 +111,15 @@ fn clips_over_age_go_and_then_the_oldest_over_size() {
     assert_eq!(clips.prune(now).expect("pruned"), 0, "the newest stays");
 }
 
+#[test]
+fn a_clip_may_end_in_a_block_of_a_few_samples() {
+    for n in [1, 15, 16, 4096 + 1, 4096 + 15] {
+        let samples: Vec<i16> = (0..n).map(|i| (i % 700) as i16).collect();
+        let bytes = compress(&samples).expect("compressed");
+        assert_eq!(expand(&bytes), Ok(samples), "{n}");
+    }
+}
+
 proptest! {
     #![proptest_config(ProptestConfig { cases: 64, failure_persistence: None, ..ProptestConfig::default() })]
 

@@ -123,6 +123,16 @@ fn say_token(token: &str, words: &mut Vec<String>) {
         }
         return;
     }
+    if let Some((way, line)) = token.split_once('L')
+        && [way, line]
+            .iter()
+            .all(|t| !t.is_empty() && t.chars().all(|c| c.is_ascii_digit()))
+    {
+        figure(way, words);
+        push(words, "line");
+        figure(line, words);
+        return;
+    }
     let digits = token.trim_start_matches(['>', '<']);
     if !digits.is_empty() && digits.chars().all(|c| c.is_ascii_digit() || c == '.') {
         figure(token, words);
