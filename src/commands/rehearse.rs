@@ -146,7 +146,7 @@ pub fn run(args: &Args) -> Result<(), Failure> {
     }
     println!("\nThe job and its log are in\n{}\n", folder.display());
     let book = Logbook::open(&file)?;
-    println!("Review, as at the van (handsfull review):\n");
+    println!("Review at the van (handsfull review):\n");
     let show = |order| review::review(&book.material(), order, &Filter::default(), COLUMNS);
     print(&show(Order::Circuit))?;
     println!("\nWhat was heard against what was kept\n(handsfull review --spoken):\n");
