@@ -266,7 +266,7 @@ impl State {
     pub(super) fn read_back(&mut self, candidate: Candidate, out: &mut Vec<Effect>) {
         self.pop_all();
         self.note("");
-        let off = candidate.assessment.questioned();
+        let off = candidate.assessment.verdict.questioned();
         out.push(Effect::Tone(if off {
             Tone::OutOfRange
         } else {
@@ -282,7 +282,7 @@ impl State {
             ask.misses = 0;
         }
         self.pop_all();
-        if candidate.assessment.questioned() {
+        if candidate.assessment.verdict.questioned() {
             self.note("");
             self.push(Prompt::Question(Box::new(candidate)), out);
         } else {

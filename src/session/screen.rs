@@ -448,7 +448,7 @@ fn verdict(candidate: &Candidate) -> &'static str {
 }
 
 fn confirm_view(candidate: &Candidate, view: &mut View) {
-    let off = candidate.assessment.questioned();
+    let off = candidate.assessment.verdict.questioned();
     view.alarm = off;
     view.body = candidate
         .heard
