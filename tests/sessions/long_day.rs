@@ -61,8 +61,10 @@ fn memory_stays_flat_and_steps_quick_over_eight_hours() {
     // A hundredth of a core at most, also on a busy machine.
     assert!(took < Duration::from_secs(7 * 36), "{took:?}");
     if let (Some(before), Some(after)) = (before, resident_kb()) {
+        // Other tests of this process come and go meanwhile; fifty bytes kept an event would be
+        // 17 MB.
         assert!(
-            after < before + 2_048,
+            after < before + 8_192,
             "{before} kB before, {after} kB after"
         );
     }
