@@ -180,6 +180,8 @@ impl Session {
                 ..Keeping::default()
             },
         );
+        // Old clips go when a session begins; where that fails, it is no reason not to work.
+        let _ = clips.prune(std::time::SystemTime::now());
         let phrases = Arc::clone(&self.phrases);
         match listening::start(&place, phrases, &lexicon()?, clips, sound.mouth()) {
             Ok((ear, events)) => {

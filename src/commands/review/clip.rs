@@ -1,6 +1,10 @@
 //! Clips at the van: heard once more, written out, run through the present voice.
 
-use std::path::Path;
+use std::{
+    path::Path,
+    thread,
+    time::{Duration, Instant},
+};
 
 use super::{
     super::{
@@ -20,6 +24,7 @@ use crate::{
     journal::clips::{ClipError, Clips, Keeping, RATE},
     report::words,
     speech::meaning::{Context, Control, Heard, Meaning},
+    voice::speaker::{Speaker, clips::RATE as SPEAKER_RATE},
 };
 
 fn clips(book: &Logbook) -> Clips {
@@ -58,10 +63,7 @@ pub(super) fn play(book: &Logbook, no: u64, to: Option<&Path>) -> Result<(), Fai
         }
     };
     let Some(to) = to else {
-        return Err(
-            Failure::new(Kind::Device, "clips cannot be played here yet")
-                .hint("--to FILE writes the clip as WAV"),
-        );
+        return aloud(reading, &samples);
     };
     write_wav(to, &samples).map_err(|e| {
         Failure::new(
@@ -75,6 +77,26 @@ pub(super) fn play(book: &Logbook, no: u64, to: Option<&Path>) -> Result<(), Fai
         to.display(),
         reading.heard.as_deref().unwrap_or_default()
     ))
+}
+
+/// Plays samples and waits until they have sounded.
+fn aloud(reading: &ReadingKept, samples: &[i16]) -> Result<(), Failure> {
+    let speaker = Speaker::open(1.0).map_err(|e| {
+        Failure::new(Kind::Device, e).hint("--to FILE writes the clip as WAV instead")
+    })?;
+    print(&format!(
+        "heard as \"{}\"\n",
+        reading.heard.as_deref().unwrap_or_default()
+    ))?;
+    debug_assert_eq!(RATE, SPEAKER_RATE, "both are 16 kHz");
+    speaker.play(samples.iter().map(|s| f32::from(*s) / 32_768.0));
+    // A device that stops taking sound must not hold the review up for ever.
+    let seconds = samples.len() as f64 / f64::from(RATE) + 2.0;
+    let until = Instant::now() + Duration::from_secs_f64(seconds);
+    while speaker.sounding() && Instant::now() < until {
+        thread::sleep(Duration::from_millis(20));
+    }
+    Ok(())
 }
 
 fn write_wav(path: &Path, samples: &[i16]) -> Result<(), hound::Error> {
