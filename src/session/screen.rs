@@ -455,9 +455,15 @@ fn confirm_view(candidate: &Candidate, view: &mut View) {
         .iter()
         .map(|words| format!("Heard: {words}"))
         .collect();
-    if off && matches!(candidate.entry, Entry::Reading(_)) {
-        view.body.push(format!("! {}", verdict(candidate)));
-        view.body.extend(findings(candidate).into_iter().take(1));
+    if matches!(candidate.entry, Entry::Reading(_)) {
+        let doubt = findings(candidate).into_iter().next();
+        if off {
+            view.body.push(format!("! {}", verdict(candidate)));
+        } else if doubt.is_some() {
+            // The series hints at a fault although this reading lies in its range.
+            view.body.push("! within the range, but:".into());
+        }
+        view.body.extend(doubt);
     }
     view.input = format!("= {}", candidate.entry);
     view.question = match &candidate.entry {
