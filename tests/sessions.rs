@@ -6,7 +6,5 @@ mod bench;
 mod chance;
 #[path = "sessions/days.rs"]
 mod days;
-#[path = "sessions/long_day.rs"]
-mod long_day;
 #[path = "sessions/noise.rs"]
 mod noise;
