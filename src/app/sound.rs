@@ -91,11 +91,9 @@ impl Voice for Sound {
     }
 
     fn pause(&mut self, pause: bool) {
+        // The ear stays open: "resume" must be heard, and the session takes nothing else meanwhile.
         if let (true, Some(speaker)) = (pause, &self.speaker) {
             speaker.hush();
-        }
-        if let Some(ear) = &self.ear {
-            ear.pause(pause);
         }
     }
 

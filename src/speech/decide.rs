@@ -259,12 +259,12 @@ mod tests {
     fn words_one_sound_apart_are_asked_about_from_further_away() {
         check(
             Context::Insulation,
-            &[("fifteen megohms", 0.0), ("fifty megohms", 4.0)],
+            &[("fifteen megohms", 0.0), ("fifty megohms", 2.5)],
             "15 MΩ or 50 MΩ",
         );
         check(
             Context::Insulation,
-            &[("fifteen megohms", 0.0), ("sixteen megohms", 4.0)],
+            &[("fifteen megohms", 0.0), ("sixteen megohms", 2.5)],
             "15 MΩ",
         );
     }
@@ -273,12 +273,12 @@ mod tests {
     fn a_dropped_point_and_a_dropped_repetition_are_asked_about() {
         check(
             Context::Ohms,
-            &[("one two five", 0.0), ("one point two five", 4.0)],
+            &[("one two five", 0.0), ("one point two five", 2.5)],
             "125 or 1.25",
         );
         check(
             Context::Ohms,
-            &[("zero point two two", 0.0), ("zero point two", 4.0)],
+            &[("zero point two two", 0.0), ("zero point two", 2.5)],
             "0.22 or 0.2",
         );
     }

@@ -174,7 +174,10 @@ fn differs(reading: &ReadingKept, heard: &Heard) -> Option<String> {
                 Some(unit) => now.clone().or_unit(unit),
                 None => now.clone(),
             };
-            if kept == Some(Value::Reading(now.clone())) {
+            // By their figures: 0.50 and 0.5 are equal numbers and different readings.
+            if let Some(Value::Reading(kept)) = &kept
+                && (kept.figure(), kept.unit()) == (now.figure(), now.unit())
+            {
                 return None;
             }
             now.to_string()
