@@ -167,28 +167,37 @@ fn context_of(target: &Target) -> Context {
 
 /// The difference in words; `None` when today's hearing gives the value that was kept.
 fn differs(reading: &ReadingKept, heard: &Heard) -> Option<String> {
-    let kept = value_of(reading);
-    let now = match &heard.meaning {
+    // By their text: 0.50 and 0.5 are equal numbers and different readings.
+    let kept = value_of(reading).map(|kept| words::value(&kept));
+    let own = reading.target.test.unit();
+    let said = |meaning: &Meaning| match meaning {
         Meaning::Reading(now) => {
-            let now = match reading.target.test.unit() {
+            let now = match own {
                 Some(unit) => now.clone().or_unit(unit),
                 None => now.clone(),
             };
-            // By their figures: 0.50 and 0.5 are equal numbers and different readings.
-            if let Some(Value::Reading(kept)) = &kept
-                && (kept.figure(), kept.unit()) == (now.figure(), now.unit())
-            {
-                return None;
-            }
-            now.to_string()
+            Some(now.to_string())
         }
-        Meaning::Control(Control::Confirmed) if kept == Some(Value::Ticked(true)) => return None,
-        Meaning::Control(Control::NotConfirmed) if kept == Some(Value::Ticked(false)) => {
-            return None;
+        Meaning::Control(Control::Confirmed) => Some(words::value(&Value::Ticked(true))),
+        Meaning::Control(Control::NotConfirmed) => Some(words::value(&Value::Ticked(false))),
+        _ => None,
+    };
+    let meaning = match &heard.meaning {
+        // "Correction zero point five" says the value too.
+        Meaning::Control(Control::Correction(Some(corrected))) => corrected,
+        other => other,
+    };
+    let now = match meaning {
+        Meaning::Ambiguous(all) if all.iter().any(|one| said(one) == kept) => {
+            format!("{} meanings, the kept one among them", all.len())
         }
-        Meaning::Ambiguous(all) => format!("one of {} meanings", all.len()),
+        Meaning::Ambiguous(all) => format!("{} meanings, none of them the kept one", all.len()),
         Meaning::Nothing(why) => format!("nothing ({why})"),
-        _ => "no reading".into(),
+        one => match said(one) {
+            now if now == kept => return None,
+            Some(now) => now,
+            None => "no reading".into(),
+        },
     };
     let text = words::raw(&reading.value, reading.unit.as_deref());
     Some(format!(

@@ -73,6 +73,12 @@ fn the_same_value_heard_again_is_no_difference() {
 }
 
 #[test]
+fn a_correction_says_its_value_too() {
+    let ohms = kept(TestKind::R1R2, "0.26", Some("ohm"));
+    check(&ohms, "correction zero point two six", None);
+}
+
+#[test]
 fn another_value_or_none_is_one() {
     let ohms = kept(TestKind::R1R2, "0.50", Some("ohm"));
     check(
