@@ -7,9 +7,14 @@
 use std::{
     io::{self, BufRead, IsTerminal, Write},
     path::Path,
+    sync::{
+        Arc,
+        atomic::{AtomicBool, Ordering},
+    },
 };
 
 use rustyline::{DefaultEditor, error::ReadlineError};
+use signal_hook::consts::SIGINT;
 
 use super::{Failure, Kind, check::summary, lay};
 use crate::plan::{
@@ -118,7 +123,8 @@ fn of_draft(wrong: &DraftError) -> Failure {
 
 /// Where answers come from.
 enum Asker {
-    Terminal(Box<DefaultEditor>),
+    /// With a flag that Ctrl-C raises between two questions, when the editor does not take keys.
+    Terminal(Box<DefaultEditor>, Arc<AtomicBool>),
     Pipe(io::StdinLock<'static>),
 }
 
@@ -134,7 +140,13 @@ impl Asker {
         for answer in draft.answers() {
             let _ = editor.add_history_entry(answer);
         }
-        Ok(Asker::Terminal(Box::new(editor)))
+        let stop = Arc::new(AtomicBool::new(false));
+        // Without it Ctrl-C between questions would end the program before it said where the
+        // answers are.
+        signal_hook::flag::register(SIGINT, Arc::clone(&stop)).map_err(|why| {
+            Failure::new(Kind::Device, format!("signals cannot be handled: {why}"))
+        })?;
+        Ok(Asker::Terminal(Box::new(editor), stop))
     }
 
     /// Puts a question and gives the line answered.
@@ -165,7 +177,8 @@ impl Asker {
             .hint("the same command goes on where this stopped")
         };
         match self {
-            Asker::Terminal(editor) => {
+            Asker::Terminal(_, stop) if stop.load(Ordering::Relaxed) => Err(stopped("stopped")),
+            Asker::Terminal(editor, _) => {
                 let initial = before.unwrap_or_default();
                 match editor.readline_with_initial(&prompt, (&initial, "")) {
                     Ok(line) => {
