@@ -16,7 +16,8 @@ use super::{
     recogniser::{Recogniser, RecogniserError, Way},
 };
 use crate::speech::{
-    Context, Heard, Hypothesis, Margins, Meaning, Phrases, decide, word_graph::WordGraph,
+    Context, Heard, Hypothesis, Margins, Meaning, Phrases, decide, parse::same,
+    word_graph::WordGraph,
 };
 
 /// When an utterance counts as none of ours.
@@ -32,7 +33,7 @@ impl Default for Limits {
     fn default() -> Self {
         Self {
             worse: 2.5,
-            sounds: 2,
+            sounds: 1,
         }
     }
 }
@@ -46,8 +47,8 @@ pub struct Fit {
     pub grammar: f64,
     /// The likeliest sounds without any grammar, and their cost without what each sound costs.
     pub anything: Way,
-    /// Length of the utterance in seconds.
-    pub seconds: f32,
+    /// Seconds of the utterance that stand out of the room.
+    pub voiced: f32,
 }
 
 impl Fit {
@@ -91,7 +92,11 @@ impl Hearing {
             phrases,
             graphs: Mutex::default(),
             limits: Limits::default(),
-            margins: Margins::default(),
+            margins: Margins {
+                different: 1.0,
+                confusable: 2.5,
+                ..Margins::default()
+            },
         }
     }
 
@@ -118,13 +123,14 @@ impl Hearing {
         let mut anything = anything.into_iter().next().unwrap_or(Way {
             words: String::new(),
             cost: 0.0,
+            seconds: 0.0,
         });
         anything.cost -= anything.words.split_whitespace().count() as f64 * f64::from(SOUND);
         let mut fit = Fit {
             ways: Vec::new(),
             grammar: 0.0,
             anything,
-            seconds: utterance.seconds(),
+            voiced: utterance.voiced,
         };
         // Hardly a sound in it: not worth the search.
         if fit.sounds() < self.limits.sounds {
@@ -150,8 +156,9 @@ impl Hearing {
             anything: Way {
                 words: String::new(),
                 cost,
+                seconds: utterance.voiced,
             },
-            seconds: utterance.seconds(),
+            voiced: utterance.voiced,
         })
     }
 
@@ -193,12 +200,38 @@ impl Hearing {
         decide(&self.phrases, context, &hypotheses, &self.margins)
     }
 
+    /// How far behind the next hypothesis of another meaning lies, in nats; infinite when there is
+    /// none.
+    #[must_use]
+    pub fn lead(&self, context: Context, fit: &Fit) -> f64 {
+        let Some((best, rest)) = fit.ways.split_first() else {
+            return 0.0;
+        };
+        let due = self.phrases.understand(context, &best.words);
+        rest.iter()
+            .find(|way| {
+                let other = self.phrases.understand(context, &way.words);
+                !matches!(other, Meaning::Nothing(_)) && !alike(&due, &other)
+            })
+            .map_or(f64::INFINITY, |way| way.cost - best.cost)
+    }
+
     fn graph(&self, context: Context) -> Arc<WordGraph> {
         let mut graphs = self.graphs.lock().unwrap_or_else(PoisonError::into_inner);
         let graph = graphs
             .entry(context)
             .or_insert_with(|| Arc::new(self.phrases.word_graph(context)));
         Arc::clone(graph)
+    }
+}
+
+/// The same meaning, or the same figure with and without its unit.
+fn alike(a: &Meaning, b: &Meaning) -> bool {
+    match (a, b) {
+        (Meaning::Reading(a), Meaning::Reading(b)) => {
+            a.value() == b.value() && a.bound() == b.bound()
+        }
+        _ => same(a, b),
     }
 }
 
@@ -278,13 +311,15 @@ mod tests {
             ways: vec![Way {
                 words: "seven".into(),
                 cost: -90.0,
+                seconds: 0.4,
             }],
             grammar: 5.0,
             anything: Way {
                 words: "[S] [EH] [V] [AH] [N]".into(),
                 cost: -100.0,
+                seconds: 0.4,
             },
-            seconds: 0.5,
+            voiced: 0.5,
         };
         assert_eq!(fit.sounds(), 5);
         assert!((fit.worse() - 1.0).abs() < 1e-9);

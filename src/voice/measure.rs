@@ -43,6 +43,8 @@ pub struct Row {
     pub margin: f64,
     /// The second hypothesis.
     pub second: String,
+    /// Seconds that stand out of the room, that the words fill, that any sounds fill.
+    pub seconds: [f32; 3],
 }
 
 /// How a clip came out.
@@ -160,6 +162,7 @@ pub fn hear(
                 worse: fit.worse,
                 margin: fit.margin,
                 second: fit.second,
+                seconds: fit.seconds,
             });
         }
     }
@@ -172,6 +175,7 @@ struct Fit {
     worse: f64,
     margin: f64,
     second: String,
+    seconds: [f32; 3],
 }
 
 fn heard(
@@ -199,11 +203,13 @@ fn heard(
             let fit = hearing.fit(context, &utterance)?;
             let meaning = hearing.meaning(context, &fit).meaning;
             let words = fit.ways.first().map_or("", |way| &way.words).to_owned();
-            let second = fit
-                .ways
-                .get(1)
-                .map_or(99.0, |way| way.cost - fit.ways[0].cost);
+            let second = hearing.lead(context, &fit).min(99.0);
             let fit = Fit {
+                seconds: [
+                    fit.voiced,
+                    fit.ways.first().map_or(0.0, |way| way.seconds),
+                    fit.anything.seconds,
+                ],
                 sounds: fit.sounds(),
                 worse: if fit.ways.is_empty() {
                     99.0

@@ -13,7 +13,11 @@ use std::{
 
 use vosk::{CompleteResult, Model, Recognizer};
 
-use super::{build::folder::context_folder, front::resample::RATE, vosk_link};
+use super::{
+    build::{folder::context_folder, lexicon_graph::FILLER},
+    front::resample::RATE,
+    vosk_link,
+};
 
 /// Models kept open. A session alternates between a reading's context and its confirmation.
 const KEPT: usize = 3;
@@ -47,6 +51,8 @@ pub struct Way {
     pub words: String,
     /// Cost in nats, sound and grammar together; less is likelier.
     pub cost: f64,
+    /// How long the words last, without the silences between, in seconds.
+    pub seconds: f32,
 }
 
 /// A voice, opened.
@@ -132,6 +138,7 @@ impl Recogniser {
         catch_unwind(AssertUnwindSafe(|| {
             let mut recogniser = Recognizer::new(&model, RATE as f32)?;
             recogniser.set_max_alternatives(ALTERNATIVES);
+            recogniser.set_words(true);
             recogniser.accept_waveform(samples).ok()?;
             Some(ways(recogniser.final_result()))
         }))
@@ -149,11 +156,18 @@ fn ways(result: CompleteResult<'_>) -> Vec<Way> {
             .map(|a| Way {
                 words: a.text.trim().to_owned(),
                 cost: -f64::from(a.confidence),
+                seconds: a
+                    .result
+                    .iter()
+                    .filter(|word| word.word != FILLER)
+                    .map(|word| word.end - word.start)
+                    .sum(),
             })
             .collect(),
         CompleteResult::Single(one) => vec![Way {
             words: one.text.trim().to_owned(),
             cost: 0.0,
+            seconds: one.result.iter().map(|w| w.end - w.start).sum(),
         }],
     };
     ways.sort_by(|a, b| a.cost.total_cmp(&b.cost));

@@ -94,7 +94,7 @@ pub(super) fn run(args: &Args) -> Result<(), Failure> {
         }
     }
     let mut csv = String::from(
-        "voice,condition,set,clip,ours,transcript,heard,outcome,sounds,worse,margin,second\n",
+        "voice,condition,set,clip,ours,transcript,heard,outcome,sounds,worse,margin,second,voiced,words,any\n",
     );
     for voice in [
         Some(args.voice.as_deref()),
@@ -319,7 +319,7 @@ fn missed(row: &Row) -> bool {
 
 fn line(voice: &str, condition: &str, row: &Row) -> String {
     format!(
-        "{voice},{condition},{},{},{},{},{},{:?},{},{:.3},{:.3},{}\n",
+        "{voice},{condition},{},{},{},{},{},{:?},{},{:.3},{:.3},{},{:.2},{:.2},{:.2}\n",
         row.set,
         row.clip,
         row.ours,
@@ -329,6 +329,9 @@ fn line(voice: &str, condition: &str, row: &Row) -> String {
         row.sounds,
         row.worse,
         row.margin,
-        row.second
+        row.second,
+        row.seconds[0],
+        row.seconds[1],
+        row.seconds[2]
     )
 }

@@ -29,6 +29,9 @@ impl Default for Costs {
     }
 }
 
+/// The filler as a word of its own: noise, and talk that is none of our words.
+pub const FILLER: &str = "[NSN]";
+
 /// Every sound as a word of its own, in brackets: `[AA]`, ..., `[NSN]`. A grammar of all of them in
 /// any order says how well an utterance is explained by any sounds at all.
 #[must_use]
@@ -38,7 +41,7 @@ pub fn sounds(table: &PhoneTable) -> Vec<(String, Phone)> {
         .names()
         .iter()
         .filter_map(|name| Some((format!("[{name}]"), phone(name)?)))
-        .chain([("[NSN]".to_owned(), table.filler())])
+        .chain([(FILLER.to_owned(), table.filler())])
         .collect()
 }
 

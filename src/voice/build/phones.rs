@@ -178,13 +178,23 @@ impl PhoneTable {
         self.transitions + 1
     }
 
-    /// `word_boundary.int`: a line `ID POSITION` a phone.
+    /// `word_boundary.int`: a line `ID POSITION` a phone. The filler counts as a whole word there,
+    /// because it stands as one in the graph.
     #[must_use]
     pub fn word_boundaries(&self) -> String {
+        let filler = self.filler.id as usize;
         self.order
             .iter()
-            .enumerate()
-            .map(|(index, (_, position))| format!("{} {}\n", index + 1, position.word()))
+            .zip(1..)
+            .map(|((_, position), id)| {
+                let whole = id == filler;
+                let position = if whole {
+                    Position::Singleton
+                } else {
+                    *position
+                };
+                format!("{id} {}\n", position.word())
+            })
             .collect()
     }
 }
@@ -271,7 +281,7 @@ mod tests {
         assert!(
             table
                 .word_boundaries()
-                .starts_with("1 nonword\n2 nonword\n3 begin\n")
+                .starts_with("1 nonword\n2 singleton\n3 begin\n")
         );
     }
 

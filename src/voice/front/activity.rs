@@ -56,8 +56,8 @@ impl Default for Settings {
 pub enum Cut {
     /// Somebody began to speak.
     Began,
-    /// An utterance is over; here it is.
-    Ended(Vec<f32>),
+    /// An utterance is over; here it is, with the number of its frames that were voice.
+    Ended(Vec<f32>, usize),
     /// What had begun was too short to be speech.
     Dropped,
 }
@@ -228,7 +228,7 @@ impl Activity {
         if speaking.voiced < self.settings.least || !stands_out {
             return Some(Cut::Dropped);
         }
-        Some(Cut::Ended(speaking.sound))
+        Some(Cut::Ended(speaking.sound, speaking.voiced))
     }
 }
 
@@ -260,7 +260,7 @@ mod tests {
     fn lengths(cuts: &[Cut]) -> Vec<usize> {
         cuts.iter()
             .filter_map(|cut| match cut {
-                Cut::Ended(sound) => Some(sound.len() / FRAME),
+                Cut::Ended(sound, _) => Some(sound.len() / FRAME),
                 _ => None,
             })
             .collect()

@@ -35,6 +35,8 @@ pub struct Utterance {
     pub samples: Vec<i16>,
     /// 16 kHz as it was recorded: for keeping.
     pub clip: Vec<i16>,
+    /// Seconds of it that stand out of the room.
+    pub voiced: f32,
 }
 
 /// Which steps are taken; all of them unless it is being measured what each is worth.
@@ -59,13 +61,14 @@ impl Default for Steps {
 }
 
 impl Utterance {
-    fn of(sound: &[f32], steps: Steps) -> Self {
+    fn of(sound: &[f32], voiced: usize, steps: Steps) -> Self {
         let clip = sound
             .iter()
             .map(|x| (x * 32_767.0).round().clamp(-32_768.0, 32_767.0) as i16)
             .collect();
         Self {
             samples: level::normalised(sound, steps),
+            voiced: (voiced * FRAME) as f32 / RATE as f32,
             clip,
         }
     }
@@ -223,7 +226,7 @@ impl Front {
             Listening::Open | Listening::Once => {
                 let mut cuts = Vec::new();
                 self.activity.push(sound, &mut cuts);
-                let ended = cuts.iter().any(|cut| matches!(cut, Cut::Ended(_)));
+                let ended = cuts.iter().any(|cut| matches!(cut, Cut::Ended(..)));
                 let steps = self.steps;
                 events.extend(cuts.into_iter().map(|cut| event(cut, steps)));
                 if ended && matches!(self.listening, Listening::Once) {
@@ -251,21 +254,21 @@ fn event(cut: Cut, steps: Steps) -> FrontEvent {
     match cut {
         Cut::Began => FrontEvent::Began,
         Cut::Dropped => FrontEvent::Dropped,
-        Cut::Ended(sound) => FrontEvent::Utterance(Utterance::of(&sound, steps)),
+        Cut::Ended(sound, voiced) => FrontEvent::Utterance(Utterance::of(&sound, voiced, steps)),
     }
 }
 
 /// A held key says where speech is, but not that there is any: silence is still nothing.
 fn held(sound: &[f32], steps: Steps) -> FrontEvent {
     let settings = Settings::default();
-    let voiced = sound
-        .chunks(FRAME)
-        .filter(|frame| level::level(frame) > settings.quietest)
-        .count();
+    let levels: Vec<f32> = sound.chunks(FRAME).map(level::level).collect();
+    let floor = levels.iter().copied().fold(0.0, f32::min);
+    let threshold = settings.quietest.max(floor + settings.keep);
+    let voiced = levels.iter().filter(|level| **level > threshold).count();
     if voiced < settings.least {
         FrontEvent::Dropped
     } else {
-        FrontEvent::Utterance(Utterance::of(sound, steps))
+        FrontEvent::Utterance(Utterance::of(sound, voiced, steps))
     }
 }
 
