@@ -39,8 +39,10 @@ pub struct Row {
     pub sounds: usize,
     /// How much worse the grammar explained each sound, in nats.
     pub worse: f64,
-    /// How far behind the second hypothesis lies, in nats.
+    /// How far behind the next hypothesis of another meaning lies, in nats.
     pub margin: f64,
+    /// How much it is like something that may be said.
+    pub likeness: f64,
     /// The second hypothesis.
     pub second: String,
     /// Seconds that stand out of the room, that the words fill, that any sounds fill.
@@ -161,6 +163,7 @@ pub fn hear(
                 sounds: fit.sounds,
                 worse: fit.worse,
                 margin: fit.margin,
+                likeness: fit.likeness,
                 second: fit.second,
                 seconds: fit.seconds,
             });
@@ -174,6 +177,7 @@ struct Fit {
     sounds: usize,
     worse: f64,
     margin: f64,
+    likeness: f64,
     second: String,
     seconds: [f32; 3],
 }
@@ -203,7 +207,7 @@ fn heard(
             let fit = hearing.fit(context, &utterance)?;
             let meaning = hearing.meaning(context, &fit).meaning;
             let words = fit.ways.first().map_or("", |way| &way.words).to_owned();
-            let second = hearing.lead(context, &fit).min(99.0);
+            let second = fit.lead.min(99.0);
             let fit = Fit {
                 seconds: [
                     fit.voiced,
@@ -217,6 +221,11 @@ fn heard(
                     fit.worse()
                 },
                 margin: second,
+                likeness: if fit.ways.is_empty() {
+                    -99.0
+                } else {
+                    fit.likeness()
+                },
                 second: fit.ways.get(1).map_or("", |way| &way.words).to_owned(),
             };
             all.push((fit, words, meaning));
@@ -278,8 +287,8 @@ pub fn peak_memory() -> f64 {
         / 1_024.0
 }
 
-/// What the limit on how much worse each sound may be explained trades: for each limit the share
-/// of right clips that would be lost, in percent, and the false accepts a minute.
+/// What the limit on likeness trades: for each limit the share of right clips that would be lost,
+/// in percent, and the false accepts a minute.
 #[must_use]
 pub fn trade(rows: &[Row], other_seconds: f64, limits: &[f64]) -> Vec<(f64, f64, f64)> {
     let right: Vec<&Row> = rows
@@ -289,10 +298,10 @@ pub fn trade(rows: &[Row], other_seconds: f64, limits: &[f64]) -> Vec<(f64, f64,
     limits
         .iter()
         .map(|limit| {
-            let lost = right.iter().filter(|row| row.worse > *limit).count();
+            let lost = right.iter().filter(|row| row.likeness < *limit).count();
             let accepted = rows
                 .iter()
-                .filter(|row| !row.ours && !row.heard.is_empty() && row.worse <= *limit)
+                .filter(|row| !row.ours && !row.heard.is_empty() && row.likeness >= *limit)
                 .count();
             (
                 *limit,

@@ -15,7 +15,7 @@ use super::{
     base::{BASE_VARIABLE, Base, BaseError},
     build::{
         Pronunciations,
-        folder::{Built, FolderError, Recipe},
+        folder::{Built, FolderError, Recipe, is_built},
         lexicon_graph::Costs,
     },
     hearing::Hearing,
@@ -93,12 +93,51 @@ pub fn ready(
     super::vosk_link::load().map_err(RecogniserError::from)?;
     let folder = match folder {
         Some(folder) => folder.to_owned(),
-        None => {
-            let base = Base::from(named_base().as_deref())?;
-            cached(&recipe(base, &phrases, lexicon))?.folder
-        }
+        None => known_or_built(&phrases, lexicon)?,
     };
     Ok(Hearing::new(Recogniser::open(&folder)?, phrases))
+}
+
+/// The voice in the cache, built if need be.
+///
+/// Compiling every grammar and reading the base only to learn that the voice is there takes a
+/// second and 60 MB on the machines this is for. So the voice that was last built by this very
+/// program for these very phrases is noted, and only when there is no such note is it looked into.
+fn known_or_built(phrases: &Phrases, lexicon: &Lexicon) -> Result<PathBuf, VoiceError> {
+    let root = cache();
+    let named = named_base();
+    let note = note(phrases, lexicon, named.as_deref()).map(|key| root.join(format!("{key}.note")));
+    let noted = note.as_ref().and_then(|note| fs::read_to_string(note).ok());
+    if let Some(digest) = noted {
+        let folder = root.join(digest.trim());
+        if is_built(&folder, digest.trim()) {
+            return Ok(folder);
+        }
+    }
+    let recipe = recipe(Base::from(named.as_deref())?, phrases, lexicon);
+    let built = cached(&recipe)?;
+    if let Some(note) = note {
+        // Without the note the next start takes a second longer.
+        let _unnoted = fs::write(note, recipe.digest());
+    }
+    Ok(built.folder)
+}
+
+/// What a voice depends on, without looking into it: the program, the base it may be told to use,
+/// the grammars with the job's own names, the pronunciations.
+fn note(phrases: &Phrases, lexicon: &Lexicon, base: Option<&Path>) -> Option<String> {
+    let stamp = |path: &Path| {
+        let data = fs::metadata(path).ok()?;
+        Some(format!("{:?} {:?}", data.len(), data.modified().ok()?))
+    };
+    let mut hasher = blake3::Hasher::new();
+    hasher.update(stamp(&env::current_exe().ok()?)?.as_bytes());
+    if let Some(base) = base {
+        hasher.update(stamp(&base.join("am/final.mdl"))?.as_bytes());
+        hasher.update(base.as_os_str().as_encoded_bytes());
+    }
+    hasher.update(format!("{:?} {lexicon:?}", phrases.library()).as_bytes());
+    Some(hasher.finalize().to_hex()[..16].to_owned())
 }
 
 /// The base the environment names.
@@ -136,5 +175,15 @@ fn forget_oldest(root: &Path, newest: &Path) {
     let surplus = (voices.len() + 1).saturating_sub(KEPT);
     for (_, path) in voices.into_iter().take(surplus) {
         let _stays = fs::remove_dir_all(path);
+    }
+    // A note whose voice is gone says nothing any more.
+    for note in fs::read_dir(root).into_iter().flatten().flatten() {
+        let path = note.path();
+        if path.extension().is_some_and(|e| e == "note") {
+            let digest = fs::read_to_string(&path).unwrap_or_default();
+            if !root.join(digest.trim()).is_dir() {
+                let _stays = fs::remove_file(path);
+            }
+        }
     }
 }

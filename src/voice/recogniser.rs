@@ -6,15 +6,18 @@
 //! needed and the least recently used is closed again. It leaves out what the words mean.
 
 use std::{
+    collections::HashMap,
+    fs,
     panic::{AssertUnwindSafe, catch_unwind},
     path::{Path, PathBuf},
     sync::{Arc, Mutex, PoisonError},
 };
 
+use rustfst::fst_traits::SerializableFst;
 use vosk::{CompleteResult, Model, Recognizer};
 
 use super::{
-    build::{folder::context_folder, lexicon_graph::FILLER},
+    build::{Automaton, WordIds, folder::context_folder, grammar_graph, lexicon_graph::FILLER},
     front::resample::RATE,
     vosk_link,
 };
@@ -60,6 +63,14 @@ pub struct Recogniser {
     folder: PathBuf,
     /// Most recently used last.
     open: Mutex<Vec<(String, Arc<Model>)>>,
+    /// Grammars by context, for what sentences cost along them.
+    grammars: Mutex<HashMap<String, Option<Arc<Weighed>>>>,
+}
+
+/// A grammar as the recogniser obeys it.
+struct Weighed {
+    automaton: Automaton,
+    words: WordIds,
 }
 
 impl std::fmt::Debug for Recogniser {
@@ -79,7 +90,8 @@ impl Recogniser {
         vosk_link::load()?;
         Ok(Self {
             folder: folder.to_owned(),
-            open: Mutex::new(Vec::new()),
+            open: Mutex::default(),
+            grammars: Mutex::default(),
         })
     }
 
@@ -97,6 +109,17 @@ impl Recogniser {
     /// [`RecogniserError::Model`] when its folder is missing or broken.
     pub fn prepare(&self, context: &str) -> Result<(), RecogniserError> {
         self.model(context).map(drop)
+    }
+
+    /// What the context's grammar alone makes words cost, in nats; `None` when they are not of it.
+    #[must_use]
+    pub fn grammar_cost(&self, context: &str, words: &str) -> Option<f64> {
+        let mut grammars = self.grammars.lock().unwrap_or_else(PoisonError::into_inner);
+        let weighed = grammars
+            .entry(context.to_owned())
+            .or_insert_with(|| weighed(&context_folder(&self.folder, context)).map(Arc::new))
+            .clone()?;
+        grammar_graph::cost(&weighed.automaton, &weighed.words, words).map(f64::from)
     }
 
     fn model(&self, context: &str) -> Result<Arc<Model>, RecogniserError> {
@@ -146,6 +169,15 @@ impl Recogniser {
         .flatten()
         .ok_or_else(failed)
     }
+}
+
+fn weighed(folder: &Path) -> Option<Weighed> {
+    let grammar = fs::read(folder.join("graph/Gr.fst")).ok()?;
+    let words = fs::read_to_string(folder.join("graph/words.txt")).ok()?;
+    Some(Weighed {
+        automaton: Automaton::load(&grammar).ok()?,
+        words: WordIds::read(&words),
+    })
 }
 
 fn ways(result: CompleteResult<'_>) -> Vec<Way> {

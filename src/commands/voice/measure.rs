@@ -63,10 +63,8 @@ pub(super) struct Args {
     without: Vec<String>,
 }
 
-/// Limits whose trade-off is shown, in nats a sound.
-const LIMITS: [f64; 12] = [
-    0.5, 0.75, 1.0, 1.25, 1.5, 1.75, 2.0, 2.25, 2.5, 3.0, 3.5, 4.0,
-];
+/// Limits of likeness whose trade-off is shown.
+const LIMITS: [f64; 11] = [0.0, 0.5, 1.0, 1.2, 1.5, 1.7, 2.0, 2.2, 2.5, 2.7, 3.0];
 
 pub(super) fn run(args: &Args) -> Result<(), Failure> {
     let context = super::super::hear::context(&args.context)?;
@@ -94,7 +92,7 @@ pub(super) fn run(args: &Args) -> Result<(), Failure> {
         }
     }
     let mut csv = String::from(
-        "voice,condition,set,clip,ours,transcript,heard,outcome,sounds,worse,margin,second,voiced,words,any\n",
+        "voice,condition,set,clip,ours,transcript,heard,outcome,sounds,worse,margin,likeness,second,voiced,words,any\n",
     );
     for voice in [
         Some(args.voice.as_deref()),
@@ -218,7 +216,7 @@ impl Job<'_> {
             self.context.name()
         );
         if other_seconds > 0.0 {
-            let mut trade = table(&["limit (nats a sound)", "right lost %", "taken a minute"]);
+            let mut trade = table(&["least likeness", "right lost %", "taken a minute"]);
             for (limit, lost, taken) in measure::trade(&measured.rows, other_seconds, &LIMITS) {
                 trade.add_row([
                     format!("{limit:.2}"),
@@ -319,7 +317,7 @@ fn missed(row: &Row) -> bool {
 
 fn line(voice: &str, condition: &str, row: &Row) -> String {
     format!(
-        "{voice},{condition},{},{},{},{},{},{:?},{},{:.3},{:.3},{},{:.2},{:.2},{:.2}\n",
+        "{voice},{condition},{},{},{},{},{},{:?},{},{:.3},{:.3},{:.3},{},{:.2},{:.2},{:.2}\n",
         row.set,
         row.clip,
         row.ours,
@@ -329,6 +327,7 @@ fn line(voice: &str, condition: &str, row: &Row) -> String {
         row.sounds,
         row.worse,
         row.margin,
+        row.likeness,
         row.second,
         row.seconds[0],
         row.seconds[1],

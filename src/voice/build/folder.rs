@@ -214,7 +214,9 @@ pub fn context_folder(folder: &Path, context: &str) -> PathBuf {
     folder.join("contexts").join(context)
 }
 
-fn is_built(folder: &Path, digest: &str) -> bool {
+/// Whether a folder holds the voice of that digest, whole.
+#[must_use]
+pub fn is_built(folder: &Path, digest: &str) -> bool {
     fs::read_to_string(folder.join("built.txt")).is_ok_and(|text| text.trim() == digest)
 }
 

@@ -67,6 +67,29 @@ pub fn build(
     })
 }
 
+/// The cost of a sentence along a compiled grammar: the cheapest of its ways; `None` when it is
+/// not one of its sentences.
+#[must_use]
+pub fn cost(automaton: &Automaton, ids: &WordIds, sentence: &str) -> Option<f32> {
+    let mut reached = vec![(automaton.start()?, 0.0)];
+    for word in sentence.split_whitespace() {
+        let id = ids.get(word)? as usize;
+        let mut next = Vec::new();
+        for (at, sofar) in reached {
+            for arc in automaton.get_trs(at).ok()?.trs() {
+                if arc.ilabel as usize == id {
+                    next.push((arc.nextstate, sofar + arc.weight.value()));
+                }
+            }
+        }
+        reached = next;
+    }
+    let ends = reached
+        .iter()
+        .filter_map(|(at, sofar)| Some(sofar + *automaton.final_weight(*at).ok()??.value()));
+    ends.min_by(f32::total_cmp)
+}
+
 fn raw(
     graph: &WordGraph,
     ids: &WordIds,
@@ -199,27 +222,6 @@ mod tests {
                 })
                 .collect(),
         }
-    }
-
-    /// The cost of a sentence: the cheapest of its ways.
-    fn cost(automaton: &Automaton, ids: &WordIds, sentence: &str) -> Option<f32> {
-        let mut reached = vec![(automaton.start()?, 0.0)];
-        for word in sentence.split_whitespace() {
-            let id = ids.get(word)? as usize;
-            let mut next = Vec::new();
-            for (at, sofar) in reached {
-                for arc in automaton.get_trs(at).ok()?.trs() {
-                    if arc.ilabel == id {
-                        next.push((arc.nextstate, sofar + arc.weight.value()));
-                    }
-                }
-            }
-            reached = next;
-        }
-        let ends = reached
-            .iter()
-            .filter_map(|(at, sofar)| Some(sofar + *automaton.final_weight(*at).ok()??.value()));
-        ends.min_by(f32::total_cmp)
     }
 
     fn digits() -> (WordGraph, WordIds) {

@@ -37,6 +37,8 @@ pub struct Utterance {
     pub clip: Vec<i16>,
     /// Seconds of it that stand out of the room.
     pub voiced: f32,
+    /// Whether a key was held for it.
+    pub held: bool,
 }
 
 /// Which steps are taken; all of them unless it is being measured what each is worth.
@@ -69,6 +71,7 @@ impl Utterance {
         Self {
             samples: level::normalised(sound, steps),
             voiced: (voiced * FRAME) as f32 / RATE as f32,
+            held: false,
             clip,
         }
     }
@@ -268,7 +271,10 @@ fn held(sound: &[f32], steps: Steps) -> FrontEvent {
     if voiced < settings.least {
         FrontEvent::Dropped
     } else {
-        FrontEvent::Utterance(Utterance::of(sound, voiced, steps))
+        FrontEvent::Utterance(Utterance {
+            held: true,
+            ..Utterance::of(sound, voiced, steps)
+        })
     }
 }
 
