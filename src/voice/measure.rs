@@ -45,7 +45,7 @@ pub struct Row {
     pub likeness: f64,
     /// The second hypothesis.
     pub second: String,
-    /// Seconds that stand out of the room, that the words fill, that any sounds fill.
+    /// Seconds that are loud, that the words fill, that any sounds fill.
     pub seconds: [f32; 3],
 }
 
@@ -210,7 +210,7 @@ fn heard(
             let second = fit.lead.min(99.0);
             let fit = Fit {
                 seconds: [
-                    fit.voiced,
+                    fit.loud,
                     fit.ways.first().map_or(0.0, |way| way.seconds),
                     fit.anything.seconds,
                 ],

@@ -95,7 +95,7 @@ pub fn ready(
         Some(folder) => folder.to_owned(),
         None => known_or_built(&phrases, lexicon)?,
     };
-    Ok(Hearing::new(Recogniser::open(&folder)?, phrases))
+    Ok(Hearing::new(Recogniser::open(&folder)?, phrases).pronounced(lexicon))
 }
 
 /// The voice in the cache, built if need be.

@@ -64,7 +64,7 @@ pub(super) struct Args {
 }
 
 /// Limits of likeness whose trade-off is shown.
-const LIMITS: [f64; 11] = [0.0, 0.5, 1.0, 1.2, 1.5, 1.7, 2.0, 2.2, 2.5, 2.7, 3.0];
+const LIMITS: [f64; 11] = [1.4, 1.7, 1.95, 2.2, 2.45, 2.7, 2.85, 3.0, 3.25, 3.5, 4.0];
 
 pub(super) fn run(args: &Args) -> Result<(), Failure> {
     let context = super::super::hear::context(&args.context)?;
@@ -92,7 +92,7 @@ pub(super) fn run(args: &Args) -> Result<(), Failure> {
         }
     }
     let mut csv = String::from(
-        "voice,condition,set,clip,ours,transcript,heard,outcome,sounds,worse,margin,likeness,second,voiced,words,any\n",
+        "voice,condition,set,clip,ours,transcript,heard,outcome,sounds,worse,margin,likeness,second,loud,words,any\n",
     );
     for voice in [
         Some(args.voice.as_deref()),

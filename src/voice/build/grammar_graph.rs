@@ -77,7 +77,7 @@ pub fn cost(automaton: &Automaton, ids: &WordIds, sentence: &str) -> Option<f32>
         let mut next = Vec::new();
         for (at, sofar) in reached {
             for arc in automaton.get_trs(at).ok()?.trs() {
-                if arc.ilabel as usize == id {
+                if arc.ilabel == id {
                     next.push((arc.nextstate, sofar + arc.weight.value()));
                 }
             }

@@ -56,10 +56,21 @@ impl Default for Settings {
 pub enum Cut {
     /// Somebody began to speak.
     Began,
-    /// An utterance is over; here it is, with the number of its frames that were voice.
+    /// An utterance is over; here it is, with the number of its loud frames (see [`loud`]).
     Ended(Vec<f32>, usize),
     /// What had begun was too short to be speech.
     Dropped,
+}
+
+/// How many of some frames are loud: within 15 dB of the loudest. In quiet that is most of speech,
+/// and in noise it is still speech, while the noise between words is not counted.
+#[must_use]
+pub fn loud(levels: &[f32]) -> usize {
+    let loudest = levels.iter().copied().fold(-120.0, f32::max);
+    levels
+        .iter()
+        .filter(|level| **level > loudest - 15.0)
+        .count()
 }
 
 /// Frames over which the floor looks back: three seconds.
@@ -91,7 +102,8 @@ struct Speaking {
     frames: usize,
     voiced: usize,
     since_voice: usize,
-    loudest: f32,
+    /// The level of each frame.
+    levels: Vec<f32>,
 }
 
 impl Activity {
@@ -175,7 +187,7 @@ impl Activity {
             Some(speaking) => {
                 speaking.sound.extend_from_slice(frame);
                 speaking.frames += 1;
-                speaking.loudest = speaking.loudest.max(smooth);
+                speaking.levels.push(smooth);
                 if audible && over > self.settings.keep {
                     speaking.voiced += 1;
                     speaking.since_voice = 0;
@@ -210,7 +222,7 @@ impl Activity {
             frames: 0,
             voiced,
             since_voice: 0,
-            loudest: self.last_two[0],
+            levels: vec![self.last_two[0]; voiced],
         });
         Some(Cut::Began)
     }
@@ -224,11 +236,12 @@ impl Activity {
         let keep = self.settings.before * FRAME;
         self.before.extend(&tail[tail.len().saturating_sub(keep)..]);
         // By now the floor may be known better than when it began.
-        let stands_out = speaking.loudest - self.floor() > self.settings.begin;
+        let loudest = speaking.levels.iter().copied().fold(-120.0, f32::max);
+        let stands_out = loudest - self.floor() > self.settings.begin;
         if speaking.voiced < self.settings.least || !stands_out {
             return Some(Cut::Dropped);
         }
-        Some(Cut::Ended(speaking.sound, speaking.voiced))
+        Some(Cut::Ended(speaking.sound, loud(&speaking.levels)))
     }
 }
 

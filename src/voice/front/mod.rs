@@ -35,8 +35,8 @@ pub struct Utterance {
     pub samples: Vec<i16>,
     /// 16 kHz as it was recorded: for keeping.
     pub clip: Vec<i16>,
-    /// Seconds of it that stand out of the room.
-    pub voiced: f32,
+    /// Seconds of it that are loud: see [`activity::loud`].
+    pub loud: f32,
     /// Whether a key was held for it.
     pub held: bool,
 }
@@ -63,14 +63,14 @@ impl Default for Steps {
 }
 
 impl Utterance {
-    fn of(sound: &[f32], voiced: usize, steps: Steps) -> Self {
+    fn of(sound: &[f32], loud: usize, steps: Steps) -> Self {
         let clip = sound
             .iter()
             .map(|x| (x * 32_767.0).round().clamp(-32_768.0, 32_767.0) as i16)
             .collect();
         Self {
             samples: level::normalised(sound, steps),
-            voiced: (voiced * FRAME) as f32 / RATE as f32,
+            loud: (loud * FRAME) as f32 / RATE as f32,
             held: false,
             clip,
         }
@@ -257,7 +257,7 @@ fn event(cut: Cut, steps: Steps) -> FrontEvent {
     match cut {
         Cut::Began => FrontEvent::Began,
         Cut::Dropped => FrontEvent::Dropped,
-        Cut::Ended(sound, voiced) => FrontEvent::Utterance(Utterance::of(&sound, voiced, steps)),
+        Cut::Ended(sound, loud) => FrontEvent::Utterance(Utterance::of(&sound, loud, steps)),
     }
 }
 
@@ -265,15 +265,16 @@ fn event(cut: Cut, steps: Steps) -> FrontEvent {
 fn held(sound: &[f32], steps: Steps) -> FrontEvent {
     let settings = Settings::default();
     let levels: Vec<f32> = sound.chunks(FRAME).map(level::level).collect();
-    let floor = levels.iter().copied().fold(0.0, f32::min);
-    let threshold = settings.quietest.max(floor + settings.keep);
-    let voiced = levels.iter().filter(|level| **level > threshold).count();
+    let voiced = levels
+        .iter()
+        .filter(|level| **level > settings.quietest)
+        .count();
     if voiced < settings.least {
         FrontEvent::Dropped
     } else {
         FrontEvent::Utterance(Utterance {
             held: true,
-            ..Utterance::of(sound, voiced, steps)
+            ..Utterance::of(sound, activity::loud(&levels), steps)
         })
     }
 }
