@@ -12,7 +12,7 @@ use clap::Args as ClapArgs;
 
 use super::{
     failure::{Failure, Kind},
-    voice::lexicon,
+    own_words,
 };
 use crate::{
     app::{
@@ -22,7 +22,7 @@ use crate::{
         settings,
         sound::Sound,
     },
-    domain::{place::Place, plan::Job},
+    domain::plan::Job,
     journal::{
         Journal, JournalError,
         clips::{Clips, Keeping},
@@ -138,19 +138,7 @@ impl Session {
             eprintln!("{incident}");
         }
         let log = journal.entries().map_err(|e| journal_failure(&e))?;
-        let names: Vec<(String, Place)> = job
-            .place_names
-            .iter()
-            .map(|name| {
-                let place = Place {
-                    board: name.board.clone(),
-                    circuit: name.circuit,
-                    ..Place::default()
-                };
-                (name.name.clone(), place)
-            })
-            .collect();
-        let phrases = Phrases::with_places(&names).map_err(|e| Failure::new(Kind::Input, e))?;
+        let phrases = own_words::phrases(Some(&job))?;
         let mut setup = Setup::new(job, tester, settings);
         setup.away = app::left_long(&log.entries, now);
         setup.resume_at = app::breaks_off_at(&log.entries);
@@ -183,7 +171,11 @@ impl Session {
         // Old clips go when a session begins; where that fails, it is no reason not to work.
         let _ = clips.prune(std::time::SystemTime::now());
         let phrases = Arc::clone(&self.phrases);
-        match listening::start(&place, phrases, &lexicon()?, clips, sound.mouth()) {
+        let (lexicon, troubles) = own_words::pronounced(Some(&self.setup.job))?;
+        for trouble in troubles {
+            eprintln!("{trouble}");
+        }
+        match listening::start(&place, phrases, &lexicon, clips, sound.mouth()) {
             Ok((ear, events)) => {
                 sound.listen_with(ear);
                 self.setup.voice = Some(place.voice.map_or_else(

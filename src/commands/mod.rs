@@ -5,6 +5,7 @@ pub mod field;
 pub mod hear;
 pub mod join;
 mod logbook;
+mod own_words;
 pub mod plan;
 pub mod reckon;
 pub mod rehearse;

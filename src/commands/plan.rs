@@ -76,7 +76,7 @@ pub fn run(args: &Args) -> Result<(), Failure> {
 }
 
 /// Reads a job file; its mistakes become the failure's text.
-fn read(file: &std::path::Path) -> Result<Loaded, Failure> {
+pub(super) fn read(file: &std::path::Path) -> Result<Loaded, Failure> {
     plan::read(file).map_err(|wrong| {
         let failure = Failure::new(Kind::Input, &wrong);
         match wrong {

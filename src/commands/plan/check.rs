@@ -2,7 +2,7 @@
 
 use std::path::Path;
 
-use super::{Failure, lay, read};
+use super::{super::own_words, Failure, lay, read};
 use crate::domain::{
     plan::{CircuitKind, Job},
     sequence,
@@ -14,6 +14,9 @@ use crate::domain::{
 pub(super) fn run(file: &Path, width: usize) -> Result<(), Failure> {
     let loaded = read(file)?;
     let mut out = lay::wrapped(&summary(&loaded.job), 0, width);
+    for name in &loaded.job.place_names {
+        out.push_str(&lay::wrapped(&own_words::told(name)?, 0, width));
+    }
     for notice in &loaded.notices {
         out.push_str(&lay::wrapped(&format!("Note: {}.", notice.text), 0, width));
     }

@@ -6,13 +6,12 @@ use super::{
     super::{
         failure::{Failure, Kind},
         logbook::Logbook,
-        voice::lexicon,
+        own_words,
     },
     clip::Ear,
 };
 use crate::{
-    domain::place::Place,
-    speech::{Context, Phrases},
+    speech::Context,
     voice::{
         front::{Front, FrontEvent, activity::Settings, resample::RATE},
         ready,
@@ -25,21 +24,10 @@ use crate::{
 /// A [`Failure`] of kind device when there is no recogniser or no voice.
 pub(super) fn open(book: &Logbook) -> Result<Box<Ear<'static>>, Failure> {
     let device = |e: &dyn std::fmt::Display| Failure::new(Kind::Device, e);
-    let names: Vec<(String, Place)> = book
-        .job
-        .iter()
-        .flat_map(|job| &job.place_names)
-        .map(|name| {
-            let place = Place {
-                board: name.board.clone(),
-                circuit: name.circuit,
-                ..Place::default()
-            };
-            (name.name.clone(), place)
-        })
-        .collect();
-    let phrases = Phrases::with_places(&names).map_err(|e| Failure::new(Kind::Input, e))?;
-    let hearing = ready::ready(Arc::new(phrases), &lexicon()?, None).map_err(|e| device(&e))?;
+    let phrases = own_words::phrases(book.job.as_ref())?;
+    // Sounds that cannot be used are guessed; the field told about them.
+    let (lexicon, _told) = own_words::pronounced(book.job.as_ref())?;
+    let hearing = ready::ready(Arc::new(phrases), &lexicon, None).map_err(|e| device(&e))?;
     Ok(Box::new(move |context: Context, samples: &[i16]| {
         let mut front = Front::new(RATE, Settings::default()).ok_or("16 kHz is not taken")?;
         // A clip is one utterance already: it goes in as if the talk key had been held.
