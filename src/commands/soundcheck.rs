@@ -19,10 +19,10 @@ use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
 
 use super::{
     failure::{Failure, Kind},
-    voice::lexicon,
+    own_words,
 };
 use crate::{
-    speech::{Context, Phrases, parse::same},
+    speech::{Context, Heard, Meaning, Phrases, parse::same},
     voice::{
         ear::{Ear, Opener, VoiceEvent},
         ready,
@@ -34,7 +34,7 @@ use crate::{
 /// Try microphone and voice before work
 #[derive(Debug, ClapArgs)]
 pub struct Args {
-    /// Keep the outcome beside this job file
+    /// Try the names of places of this job, too, and keep the outcome beside its file
     #[arg(long, value_name = "JOB")]
     job: Option<PathBuf>,
     /// The microphone, such as alsa:hw:1; the default one otherwise
@@ -50,20 +50,29 @@ pub struct Args {
 
 /// How long is waited for a phrase.
 const PATIENCE: Duration = Duration::from_secs(10);
-/// How often a phrase may be said.
+/// How often a phrase may be said; a recording says each once.
 const TRIES: usize = 2;
+
+/// Names of places that are tried.
+const NAMES: usize = 6;
 
 /// Runs the command.
 ///
 /// # Errors
 /// A [`Failure`] with its exit code.
 pub fn run(args: &Args) -> Result<(), Failure> {
-    let phrases = Phrases::with_places(&[]).map_err(|e| Failure::new(Kind::Input, e))?;
-    let hearing = ready::ready(Arc::new(phrases), &lexicon()?, None)
+    let job = args.job.as_deref().map(super::plan::read).transpose()?;
+    let job = job.map(|loaded| loaded.job);
+    let phrases = Arc::new(own_words::phrases(job.as_ref())?);
+    let (lexicon, troubles) = own_words::pronounced(job.as_ref())?;
+    for trouble in troubles {
+        println!("{trouble}");
+    }
+    let hearing = ready::ready(Arc::clone(&phrases), &lexicon, None)
         .map_err(|e| Failure::new(Kind::Device, e))?;
     let open = opener(args)?;
     let (_ear, events) = Ear::start(Arc::new(hearing), open, Context::All, Arc::default());
-    let mut desk = Desk::new(events);
+    let mut desk = Desk::new(events, if args.wav.is_some() { 1 } else { TRIES });
     desk.wait_for_source()?;
     println!("Be silent for a moment.");
     desk.watch(Duration::from_secs(2));
@@ -73,7 +82,10 @@ pub fn run(args: &Args) -> Result<(), Failure> {
         desk.watch(Duration::from_secs(seconds));
         return Ok(());
     }
-    let check = desk.check();
+    let names = job.iter().flat_map(|job| &job.place_names);
+    let names = names.map(|place| place.name.as_str()).take(NAMES);
+    let all: Vec<&str> = PHRASES.into_iter().chain(names).collect();
+    let check = desk.check(&all, &phrases);
     desk.meter.finish_and_clear();
     report(&check);
     match &args.job {
@@ -105,10 +117,11 @@ struct Desk {
     levels: Vec<f32>,
     floor: f32,
     over: bool,
+    tries: usize,
 }
 
 impl Desk {
-    fn new(events: Receiver<VoiceEvent>) -> Self {
+    fn new(events: Receiver<VoiceEvent>, tries: usize) -> Self {
         let target = if std::io::stderr().is_terminal() {
             ProgressDrawTarget::stderr()
         } else {
@@ -124,6 +137,7 @@ impl Desk {
             levels: Vec::new(),
             floor: -60.0,
             over: false,
+            tries,
         }
     }
 
@@ -174,11 +188,11 @@ impl Desk {
         self.levels.iter().copied().fold(0.0, f32::min)
     }
 
-    fn check(&mut self) -> SoundCheck {
+    fn check(&mut self, all: &[&str], phrases: &Phrases) -> SoundCheck {
         let mut tries = Vec::new();
-        for phrase in PHRASES {
+        for phrase in all {
             println!("Say: {phrase}");
-            tries.push(self.one(phrase));
+            tries.push(self.one(phrase, phrases));
             if self.over {
                 break;
             }
@@ -197,14 +211,14 @@ impl Desk {
         }
     }
 
-    fn one(&mut self, phrase: &str) -> Try {
-        let due = Phrases::plain().understand(Context::All, phrase);
+    fn one(&mut self, phrase: &str, phrases: &Phrases) -> Try {
+        let due = phrases.understand(Context::All, phrase);
         let mut one = Try {
             phrase: phrase.to_owned(),
             heard: Vec::new(),
             understood: false,
         };
-        while one.heard.len() < TRIES && !one.understood {
+        while one.heard.len() < self.tries && !one.understood {
             let until = Instant::now() + PATIENCE;
             let heard = loop {
                 match self.next(until) {
@@ -214,15 +228,26 @@ impl Desk {
                 }
             };
             one.understood = same(&heard.meaning, &due);
-            let words = heard.words().to_owned();
-            println!(
-                "  {} {words}",
-                if one.understood { "ok:" } else { "heard:" }
-            );
-            one.heard.push(words);
+            println!("  {}", told(&heard, one.understood));
+            one.heard.push(heard.words().to_owned());
         }
         one
     }
+}
+
+/// What was heard, and why it does not count when it does not.
+fn told(heard: &Heard, understood: bool) -> String {
+    let words = heard.words();
+    if understood {
+        return format!("ok: {words}");
+    }
+    let why = match &heard.meaning {
+        Meaning::Nothing(why) if words.is_empty() => return format!("heard nothing: {why}"),
+        Meaning::Nothing(why) => why.as_str(),
+        Meaning::Ambiguous(_) => "close to another, it would be asked about",
+        _ => return format!("heard: {words}"),
+    };
+    format!("heard: {words} ({why})")
 }
 
 fn report(check: &SoundCheck) {
