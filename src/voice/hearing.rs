@@ -8,7 +8,10 @@
 use std::{collections::HashMap, sync::Arc};
 
 use super::{
-    build::folder::{ANYTHING, SOUND},
+    build::{
+        folder::{ANYTHING, SOUND},
+        lexicon_graph::FILLER,
+    },
     front::Utterance,
     recogniser::{Recogniser, RecogniserError, Way},
 };
@@ -63,11 +66,14 @@ impl Fit {
     /// How many sounds there were.
     #[must_use]
     pub fn sounds(&self) -> usize {
-        self.anything
-            .words
-            .split_whitespace()
-            .filter(|sound| *sound != "[NSN]")
-            .count()
+        self.anything.words.split_whitespace().count() - self.fillers()
+    }
+
+    /// How many stretches were noise, or talk of other words, rather than sounds of speech.
+    #[must_use]
+    pub fn fillers(&self) -> usize {
+        let sounds = self.anything.words.split_whitespace();
+        sounds.filter(|sound| *sound == FILLER).count()
     }
 
     /// How much worse the grammar explains each sound than any sounds do, in nats; what the
@@ -217,6 +223,12 @@ impl Hearing {
             lead: f64::INFINITY,
             phones: 0,
         })
+    }
+
+    /// What words mean in a context.
+    #[must_use]
+    pub fn understand(&self, context: Context, words: &str) -> Meaning {
+        self.phrases.understand(context, words)
     }
 
     /// What an utterance means in a context.

@@ -6,25 +6,34 @@
 
 mod md5;
 pub mod sets;
+pub mod tables;
+pub mod trade;
 
 use std::{
     fs,
+    path::Path,
     time::{Duration, Instant},
 };
 
 use super::{
     front::{Front, FrontEvent, Steps, activity::Settings, resample::RATE},
-    hearing::Hearing,
+    hearing::{Fit, Hearing},
     recogniser::RecogniserError,
 };
 use crate::speech::{Context, Meaning, parse::same};
-use sets::{Clip, Condition};
+use sets::{Clip, Condition, Set};
 
 /// What became of one utterance (or of a clip in which none was noticed).
 #[derive(Debug, Clone, PartialEq)]
 pub struct Row {
     /// Name of the set.
     pub set: String,
+    /// Whether the voice was trained on it.
+    pub trained: bool,
+    /// The condition's name.
+    pub condition: String,
+    /// What could be said.
+    pub context: Context,
     /// File name of the clip.
     pub clip: String,
     /// Whether it ought to have been understood.
@@ -33,20 +42,32 @@ pub struct Row {
     pub transcript: String,
     /// What was heard, whether it was taken or not.
     pub heard: String,
+    /// Whether the likeliest words mean what was said, whether they were taken or not.
+    pub understood: bool,
     /// How it came out.
     pub outcome: Outcome,
-    /// Sounds in it.
-    pub sounds: usize,
-    /// How much worse the grammar explained each sound, in nats.
-    pub worse: f64,
-    /// How far behind the next hypothesis of another meaning lies, in nats.
-    pub margin: f64,
-    /// How much it is like something that may be said.
-    pub likeness: f64,
-    /// The second hypothesis.
-    pub second: String,
-    /// Seconds that are loud, that the words fill, that any sounds fill.
-    pub seconds: [f32; 3],
+    /// How it was explained; nothing when no utterance was noticed.
+    pub fit: Option<Fit>,
+    /// Seconds of the clip, without the room around it.
+    pub seconds: f64,
+}
+
+impl Row {
+    /// How much it is like something that may be said; nothing is as unlike as can be.
+    #[must_use]
+    pub fn likeness(&self) -> f64 {
+        match &self.fit {
+            Some(fit) if !fit.ways.is_empty() && !self.heard.is_empty() => fit.likeness(),
+            _ => f64::NEG_INFINITY,
+        }
+    }
+
+    /// Clips fall into two halves by the digest of their names: limits are chosen on the first
+    /// and judged on the second.
+    #[must_use]
+    pub fn judged(&self) -> bool {
+        md5::last_digit(&self.clip) % 2 == 1
+    }
 }
 
 /// How a clip came out.
@@ -62,25 +83,6 @@ pub enum Outcome {
     Nothing,
 }
 
-/// Figures of one set under one condition.
-#[derive(Debug, Clone, Default, PartialEq)]
-pub struct Score {
-    /// Clips that ought to have been understood.
-    pub clips: usize,
-    /// Those of which the words were heard exactly.
-    pub words: usize,
-    /// Those that came out right, asked, wrong.
-    pub right: usize,
-    /// See [`Outcome::Asked`].
-    pub asked: usize,
-    /// See [`Outcome::Wrong`].
-    pub wrong: usize,
-    /// Seconds of sound that ought to have been nothing.
-    pub other_seconds: f64,
-    /// Utterances in it that were taken for something.
-    pub accepted: usize,
-}
-
 /// What was measured.
 #[derive(Debug, Default)]
 pub struct Measured {
@@ -88,106 +90,110 @@ pub struct Measured {
     pub rows: Vec<Row>,
     /// Seconds of sound heard.
     pub sound: f64,
+    /// Seconds of it that were cut out as utterances and decoded.
+    pub decoded: f64,
     /// Processor seconds it took.
     pub cpu: f64,
+}
+
+/// How to listen.
+#[derive(Debug, Clone, Copy, Default)]
+pub struct How {
     /// Steps of the front that are taken.
     pub steps: Steps,
     /// Whether the voice activity cuts; without, a clip is one utterance, as with a held key.
     pub uncut: bool,
 }
 
-/// Hears clips; appends what came of them.
+/// Hears the clips of a set that are asked for in one context; appends what came of them. Noise is
+/// mixed into what ought to be understood only.
 ///
 /// # Errors
 /// [`RecogniserError`].
 pub fn hear(
     hearing: &Hearing,
     context: Context,
-    set: &str,
-    clips: &[Clip],
-    condition: Condition,
+    set: &Set,
+    (label, condition): (&str, Condition),
     noises: &[Vec<f32>],
+    how: How,
     into: &mut Measured,
-) -> Result<Score, RecogniserError> {
-    let mut score = Score::default();
-    for (index, clip) in clips.iter().enumerate() {
+) -> Result<(), RecogniserError> {
+    let clips = set.ours.iter().chain(&set.others).enumerate();
+    for (index, clip) in clips.filter(|(_, clip)| clip.context == context) {
+        let ours = !matches!(clip.meaning, Meaning::Nothing(_));
+        if !ours && condition != Condition::Clean {
+            continue;
+        }
         let Some(sound) = sets::sound(&clip.path) else {
             continue;
         };
-        let ours = !matches!(clip.meaning, Meaning::Nothing(_));
         let seconds = sound.len() as f64 / f64::from(RATE);
         let sound = condition.applied(&sound, index, noises);
         let before = cpu();
-        let mut utterances = heard(hearing, context, &sound, into)?;
+        let mut utterances = heard(hearing, context, &sound, how, into)?;
         into.cpu += cpu() - before;
         into.sound += sound.len() as f64 / f64::from(RATE);
         // The first that means something decides, as in `hear`.
         let first = utterances
             .iter()
-            .position(|(_, _, meaning)| !matches!(meaning, Meaning::Nothing(_)))
+            .position(|(_, meaning)| !matches!(meaning, Meaning::Nothing(_)))
             .unwrap_or_default();
         if ours && !utterances.is_empty() {
             utterances = vec![utterances.swap_remove(first)];
         }
+        let mut utterances: Vec<_> = utterances
+            .into_iter()
+            .map(|(fit, meaning)| (Some(fit), meaning))
+            .collect();
         if utterances.is_empty() {
-            utterances.push((
-                Fit::default(),
-                String::new(),
-                Meaning::Nothing(String::new()),
-            ));
+            utterances.push((None, Meaning::Nothing(String::new())));
         }
-        score.clips += usize::from(ours);
-        score.other_seconds += if ours { 0.0 } else { seconds };
-        for (fit, words, meaning) in utterances {
-            let outcome = outcome(&meaning, &clip.meaning);
-            match outcome {
-                Outcome::Right => score.right += 1,
-                Outcome::Asked => score.asked += 1,
-                Outcome::Wrong if ours => score.wrong += 1,
-                Outcome::Wrong => score.accepted += 1,
-                Outcome::Nothing => {}
-            }
-            score.words += usize::from(ours && words == clip.transcript);
-            into.rows.push(Row {
-                set: set.to_owned(),
-                clip: clip
-                    .path
-                    .file_name()
-                    .unwrap_or_default()
-                    .to_string_lossy()
-                    .into_owned(),
-                ours,
-                transcript: clip.transcript.clone(),
-                heard: words,
-                outcome,
-                sounds: fit.sounds,
-                worse: fit.worse,
-                margin: fit.margin,
-                likeness: fit.likeness,
-                second: fit.second,
-                seconds: fit.seconds,
-            });
+        let each = seconds / utterances.len() as f64;
+        for (fit, meaning) in utterances {
+            into.rows
+                .push(row(hearing, set, label, clip, fit, &meaning, each));
         }
     }
-    Ok(score)
+    Ok(())
 }
 
-#[derive(Default)]
-struct Fit {
-    sounds: usize,
-    worse: f64,
-    margin: f64,
-    likeness: f64,
-    second: String,
-    seconds: [f32; 3],
+fn row(
+    hearing: &Hearing,
+    set: &Set,
+    label: &str,
+    clip: &Clip,
+    fit: Option<Fit>,
+    meaning: &Meaning,
+    seconds: f64,
+) -> Row {
+    let best = fit.as_ref().and_then(|fit| fit.ways.first());
+    let heard = best.map_or_else(String::new, |way| way.words.clone());
+    let name = clip.path.file_name().unwrap_or_default();
+    let ours = !matches!(clip.meaning, Meaning::Nothing(_));
+    Row {
+        set: set.name.clone(),
+        trained: set.trained,
+        condition: label.to_owned(),
+        context: clip.context,
+        clip: name.to_string_lossy().into_owned(),
+        ours,
+        transcript: clip.transcript.clone(),
+        understood: ours && same(&hearing.understand(clip.context, &heard), &clip.meaning),
+        outcome: outcome(meaning, &clip.meaning),
+        heard,
+        fit,
+        seconds,
+    }
 }
 
 fn heard(
     hearing: &Hearing,
     context: Context,
     sound: &[f32],
-    how: &Measured,
-) -> Result<Vec<(Fit, String, Meaning)>, RecogniserError> {
+    how: How,
+    into: &mut Measured,
+) -> Result<Vec<(Fit, Meaning)>, RecogniserError> {
     let Some(front) = Front::new(RATE, Settings::default()) else {
         return Ok(Vec::new());
     };
@@ -204,31 +210,10 @@ fn heard(
     let mut all = Vec::new();
     for event in events {
         if let FrontEvent::Utterance(utterance) = event {
+            into.decoded += f64::from(utterance.seconds());
             let fit = hearing.fit(context, &utterance)?;
             let meaning = hearing.meaning(context, &fit).meaning;
-            let words = fit.ways.first().map_or("", |way| &way.words).to_owned();
-            let second = fit.lead.min(99.0);
-            let fit = Fit {
-                seconds: [
-                    fit.loud,
-                    fit.ways.first().map_or(0.0, |way| way.seconds),
-                    fit.anything.seconds,
-                ],
-                sounds: fit.sounds(),
-                worse: if fit.ways.is_empty() {
-                    99.0
-                } else {
-                    fit.worse()
-                },
-                margin: second,
-                likeness: if fit.ways.is_empty() {
-                    -99.0
-                } else {
-                    fit.likeness()
-                },
-                second: fit.ways.get(1).map_or("", |way| &way.words).to_owned(),
-            };
-            all.push((fit, words, meaning));
+            all.push((fit, meaning));
         }
     }
     Ok(all)
@@ -270,6 +255,25 @@ fn cpu() -> f64 {
     ticks / 100.0
 }
 
+/// Forgets how much memory was used so far, so that [`peak_memory`] tells of what follows; where
+/// the kernel does not allow it, the peak is that of the whole process.
+pub fn forget_peak() {
+    let _stays = fs::write("/proc/self/clear_refs", "5");
+}
+
+/// Bytes of the files below a folder; links are not followed.
+#[must_use]
+pub fn size(folder: &Path) -> u64 {
+    let entries = fs::read_dir(folder).into_iter().flatten().flatten();
+    entries
+        .map(|entry| match entry.metadata() {
+            Ok(data) if data.is_dir() => size(&entry.path()),
+            Ok(data) if data.is_file() => data.len(),
+            _ => 0,
+        })
+        .sum()
+}
+
 /// The most memory this process has used, in megabytes.
 #[must_use]
 pub fn peak_memory() -> f64 {
@@ -285,29 +289,4 @@ pub fn peak_memory() -> f64 {
         })
         .unwrap_or_default()
         / 1_024.0
-}
-
-/// What the limit on likeness trades: for each limit the share of right clips that would be lost,
-/// in percent, and the false accepts a minute.
-#[must_use]
-pub fn trade(rows: &[Row], other_seconds: f64, limits: &[f64]) -> Vec<(f64, f64, f64)> {
-    let right: Vec<&Row> = rows
-        .iter()
-        .filter(|row| row.ours && row.heard == row.transcript)
-        .collect();
-    limits
-        .iter()
-        .map(|limit| {
-            let lost = right.iter().filter(|row| row.likeness < *limit).count();
-            let accepted = rows
-                .iter()
-                .filter(|row| !row.ours && !row.heard.is_empty() && row.likeness >= *limit)
-                .count();
-            (
-                *limit,
-                100.0 * lost as f64 / right.len().max(1) as f64,
-                60.0 * accepted as f64 / other_seconds.max(1.0),
-            )
-        })
-        .collect()
 }

@@ -1,6 +1,11 @@
 //! `handsfull voice measure`: the tables of how well a voice hears.
 
-use std::{fmt, fs, path::PathBuf, sync::Arc};
+use std::{
+    fs,
+    path::{Path, PathBuf},
+    sync::Arc,
+    time::Duration,
+};
 
 use clap::Args as ClapArgs;
 
@@ -11,10 +16,14 @@ use super::{
 use crate::{
     speech::{Context, Phrases},
     voice::{
+        base::Base,
         front::Steps,
-        hearing::Hearing,
-        measure::sets::{self, Condition, Set},
-        measure::{self, Measured, Outcome, Row, Score},
+        hearing::{Hearing, Limits},
+        measure::{
+            self, How, Measured, Outcome, Row,
+            sets::{self, Condition, Set},
+            tables, trade,
+        },
         ready,
     },
 };
@@ -22,16 +31,18 @@ use crate::{
 /// Measure how well a voice hears recordings
 #[derive(Debug, ClapArgs)]
 pub(super) struct Args {
-    /// Folder of sets: subfolders with recordings and a manifest.tsv (path, transcript, speaker)
-    #[arg(long, value_name = "DIR")]
-    speech: PathBuf,
-    /// What may be said
-    #[arg(long, value_name = "NAME", default_value = "all")]
-    context: String,
-    /// A built voice in place of the embedded one
+    /// Folder of sets: subfolders with recordings and a manifest.tsv (path, transcript, speaker);
+    /// may be given again
+    #[arg(long, value_name = "DIR", required = true)]
+    speech: Vec<PathBuf>,
+    /// What may be said; otherwise each clip is heard where it would be asked for, and what ought to
+    /// be nothing is heard where readings are
+    #[arg(long, value_name = "NAME")]
+    context: Option<String>,
+    /// A built voice, or a base, in place of the embedded one
     #[arg(long, value_name = "DIR")]
     voice: Option<PathBuf>,
-    /// Another built voice to measure beside it
+    /// An earlier built voice, or base, to measure beside it
     #[arg(long, value_name = "DIR")]
     compare: Option<PathBuf>,
     /// clean, +DB (over recorded noise), -DB (quieter)
@@ -40,7 +51,7 @@ pub(super) struct Args {
         value_name = "LIST",
         value_delimiter = ',',
         allow_hyphen_values = true,
-        default_value = "clean"
+        default_value = "clean,+10,+5,-20"
     )]
     conditions: Vec<String>,
     /// Only sets whose name contains this
@@ -55,6 +66,9 @@ pub(super) struct Args {
     /// Write a line for every utterance
     #[arg(long, value_name = "FILE")]
     csv: Option<PathBuf>,
+    /// Write what the limit trades, as trade.csv and trade.svg
+    #[arg(long, value_name = "DIR")]
+    trade: Option<PathBuf>,
     /// Show what was misheard
     #[arg(long)]
     misses: bool,
@@ -63,25 +77,31 @@ pub(super) struct Args {
     without: Vec<String>,
 }
 
-/// Limits of likeness whose trade-off is shown.
-const LIMITS: [f64; 11] = [1.4, 1.7, 1.95, 2.2, 2.45, 2.7, 2.85, 3.0, 3.25, 3.5, 4.0];
+/// The condition shown beside quiet in the trade.
+const NOISY: &str = "+10";
 
 pub(super) fn run(args: &Args) -> Result<(), Failure> {
-    let context = super::super::hear::context(&args.context)?;
-    let conditions: Vec<(String, Condition)> = args
+    let context = match &args.context {
+        Some(name) => Some(super::super::hear::context(name)?),
+        None => None,
+    };
+    let conditions: Vec<Condition> = args
         .conditions
         .iter()
         .map(|name| {
             Condition::named(name)
-                .map(|condition| (name.clone(), condition))
                 .ok_or_else(|| Failure::new(Kind::Usage, format!("no condition `{name}`")))
         })
         .collect::<Result<_, _>>()?;
     let phrases = Arc::new(Phrases::with_places(&[]).map_err(|e| Failure::new(Kind::Input, e))?);
-    let mut all = sets::below(&args.speech, &phrases, context, args.everyone);
-    if all.is_empty() {
-        let what = format!("{}: no folder with a manifest.tsv", args.speech.display());
-        return Err(Failure::new(Kind::Input, what));
+    let mut all = Vec::new();
+    for folder in &args.speech {
+        let here = sets::below(folder, &phrases, context, args.everyone);
+        if here.is_empty() {
+            let what = format!("{}: no folder with a manifest.tsv", folder.display());
+            return Err(Failure::new(Kind::Input, what));
+        }
+        all.extend(here);
     }
     let noises = noises(&all);
     all.retain(|set| set.name.contains(&args.only));
@@ -91,40 +111,50 @@ pub(super) fn run(args: &Args) -> Result<(), Failure> {
             thin(&mut set.others, most);
         }
     }
-    let mut csv = String::from(
-        "voice,condition,set,clip,ours,transcript,heard,outcome,sounds,worse,margin,likeness,second,loud,words,any\n",
-    );
-    for voice in [
-        Some(args.voice.as_deref()),
-        args.compare.as_deref().map(Some),
-    ]
-    .into_iter()
-    .flatten()
-    {
-        let hearing = ready::ready(Arc::clone(&phrases), &lexicon()?, voice)
-            .map_err(|e| Failure::new(Kind::Device, e))?;
-        let job = Job {
-            name: voice.map_or("embedded".into(), |v| v.display().to_string()),
-            hearing,
-            context,
-            noises: &noises,
-            misses: args.misses,
-            without: &args.without,
-        };
-        job.measure(&all, &conditions, &mut csv)
-            .map_err(|e| Failure::new(Kind::Device, e))?;
+    let job = Job {
+        args,
+        phrases,
+        sets: &all,
+        noises: &noises,
+        conditions: &conditions,
+    };
+    // Ours first: what memory it takes shows best before another was open.
+    let ours = job.measure(args.voice.as_deref())?;
+    let mut csv = String::from(HEADER);
+    job.tell(&ours, &mut csv);
+    if let Some(folder) = &args.compare {
+        let first = job.measure(Some(folder))?;
+        job.tell(&first, &mut csv);
+        println!(
+            "\n{} → {}\n\n{}",
+            first.name,
+            ours.name,
+            tables::beside(&first.measured.rows, &ours.measured.rows, &args.conditions)
+        );
     }
-    match &args.csv {
-        Some(path) => fs::write(path, csv)
-            .map_err(|e| Failure::new(Kind::Input, format!("{}: {e}", path.display()))),
-        None => Ok(()),
+    let write = |path: &Path, text: &str| {
+        fs::write(path, text)
+            .map_err(|e| Failure::new(Kind::Input, format!("{}: {e}", path.display())))
+    };
+    if let Some(path) = &args.csv {
+        write(path, &csv)?;
     }
+    if let Some(folder) = &args.trade {
+        let rows = &ours.measured.rows;
+        let points = [false, true].map(|half| trade::curve(rows, half, NOISY));
+        let points = points.concat();
+        let Limits { open, held } = Limits::default();
+        write(&folder.join("trade.csv"), &trade::csv(&points, NOISY))?;
+        let drawing = trade::svg(&points, NOISY, &[("open", open), ("held", held)]);
+        write(&folder.join("trade.svg"), &drawing)?;
+    }
+    Ok(())
 }
 
-/// The recordings of the sets called noise, to be mixed in.
+/// The recordings of the sets called noise that no training heard, to be mixed in.
 fn noises(all: &[Set]) -> Vec<Vec<f32>> {
     all.iter()
-        .filter(|set| set.name.starts_with("noise"))
+        .filter(|set| set.name.starts_with("noise") && !set.trained)
         .flat_map(|set| &set.others)
         .filter_map(|clip| sets::sound(&clip.path))
         .filter(|sound| sound.iter().any(|x| x.abs() > 1e-3))
@@ -142,169 +172,129 @@ fn thin<T>(clips: &mut Vec<T>, most: usize) {
 }
 
 struct Job<'a> {
-    name: String,
-    hearing: Hearing,
-    context: Context,
+    args: &'a Args,
+    phrases: Arc<Phrases>,
+    sets: &'a [Set],
     noises: &'a [Vec<f32>],
-    misses: bool,
-    without: &'a [String],
+    conditions: &'a [Condition],
+}
+
+/// What was measured of one voice.
+struct Voice {
+    name: String,
+    opening: Duration,
+    memory: f64,
+    size: Option<u64>,
+    measured: Measured,
 }
 
 impl Job<'_> {
-    fn measure(
-        &self,
-        all: &[Set],
-        conditions: &[(String, Condition)],
-        csv: &mut String,
-    ) -> Result<(), crate::voice::recogniser::RecogniserError> {
-        let opening = measure::opening(&self.hearing, self.context)?;
-        let with = |step: &str| !self.without.iter().any(|w| w == step);
-        let mut measured = Measured {
+    /// Opens a voice: the one inside the program, a built one, or one built from a base.
+    fn open(&self, folder: Option<&Path>) -> Result<(Hearing, Option<u64>), Failure> {
+        let base = folder.filter(|folder| folder.join("phones.txt").is_file());
+        let mut built = folder.map(Path::to_owned);
+        let mut size = None;
+        if base.is_some() || folder.is_none() {
+            let named = ready::named_base();
+            let base = Base::from(base.or(named.as_deref()));
+            let base = base.map_err(|e| Failure::new(Kind::Input, e))?;
+            let recipe = ready::recipe(base, &self.phrases, &lexicon()?);
+            let voice = ready::cached(&recipe).map_err(|e| Failure::new(Kind::Input, e))?;
+            size = Some(measure::size(&voice.folder));
+            built = Some(voice.folder);
+        }
+        let hearing = ready::ready(Arc::clone(&self.phrases), &lexicon()?, built.as_deref())
+            .map_err(|e| Failure::new(Kind::Device, e))?;
+        Ok((hearing, size))
+    }
+
+    fn measure(&self, folder: Option<&Path>) -> Result<Voice, Failure> {
+        let (hearing, size) = self.open(folder)?;
+        let with = |step: &str| !self.args.without.iter().any(|w| w == step);
+        let how = How {
             steps: Steps {
                 high_pass: with("high-pass"),
                 level: with("level"),
                 noise: with("noise"),
             },
             uncut: !with("cutting"),
-            ..Measured::default()
         };
-        let mut understood = table(&[
-            "set",
-            "condition",
-            "clips",
-            "words exact %",
-            "right %",
-            "asked %",
-            "wrong %",
-            "nothing %",
-        ]);
-        let mut refused = table(&[
-            "set",
-            "condition",
-            "minutes",
-            "taken for something",
-            "a minute",
-        ]);
-        let mut other_seconds = 0.0;
-        for (label, condition) in conditions {
-            for set in all {
-                let from = measured.rows.len();
-                let ours = self.hear(set, &set.ours, *condition, &mut measured)?;
-                if ours.clips > 0 {
-                    understood.add_row(understood_row(&set.name, label, &ours));
-                }
-                // Noise over noise says nothing.
-                if matches!(condition, Condition::Clean) && !set.others.is_empty() {
-                    let others = self.hear(set, &set.others, *condition, &mut measured)?;
-                    other_seconds += others.other_seconds;
-                    refused.add_row(refused_row(&set.name, label, &others));
-                }
-                for row in &measured.rows[from..] {
-                    csv.push_str(&line(&self.name, label, row));
-                    if self.misses && missed(row) {
-                        println!(
-                            "{label}: {} `{}` heard `{}` ({:?})",
-                            row.clip, row.transcript, row.heard, row.outcome
-                        );
-                    }
+        measure::forget_peak();
+        let device = |e| Failure::new(Kind::Device, e);
+        let opening = measure::opening(&hearing, Context::Ohms).map_err(device)?;
+        let mut measured = Measured::default();
+        // Context by context: few are kept open.
+        for context in Context::EVERY {
+            for set in self.sets {
+                for (label, condition) in self.args.conditions.iter().zip(self.conditions) {
+                    let condition = (label.as_str(), *condition);
+                    measure::hear(
+                        &hearing,
+                        context,
+                        set,
+                        condition,
+                        self.noises,
+                        how,
+                        &mut measured,
+                    )
+                    .map_err(device)?;
                 }
             }
         }
-        println!(
-            "\nVoice: {}, context {}\n\n{understood}\n\n{refused}\n",
-            self.name,
-            self.context.name()
-        );
-        if other_seconds > 0.0 {
-            let mut trade = table(&["least likeness", "right lost %", "taken a minute"]);
-            for (limit, lost, taken) in measure::trade(&measured.rows, other_seconds, &LIMITS) {
-                trade.add_row([
-                    format!("{limit:.2}"),
-                    format!("{lost:.1}"),
-                    format!("{taken:.2}"),
-                ]);
-            }
-            println!("{trade}\n");
-        }
-        println!(
-            "opened in {} ms; real-time factor {:.4} ({:.0} s of sound); peak memory {:.0} MB",
-            opening.as_millis(),
-            measured.cpu / measured.sound.max(0.1),
-            measured.sound,
-            measure::peak_memory()
-        );
-        Ok(())
-    }
-
-    fn hear(
-        &self,
-        set: &Set,
-        clips: &[sets::Clip],
-        condition: Condition,
-        measured: &mut Measured,
-    ) -> Result<Score, crate::voice::recogniser::RecogniserError> {
-        measure::hear(
-            &self.hearing,
-            self.context,
-            &set.name,
-            clips,
-            condition,
-            self.noises,
+        let named = folder.map(|folder| folder.display().to_string());
+        Ok(Voice {
+            name: named.unwrap_or_else(|| "embedded".into()),
+            opening,
+            memory: measure::peak_memory(),
+            size,
             measured,
-        )
+        })
     }
-}
 
-/// A table in the plain form that documents take.
-struct Table(Vec<Vec<String>>);
-
-impl Table {
-    fn add_row(&mut self, row: impl Into<Vec<String>>) {
-        self.0.push(row.into());
-    }
-}
-
-impl fmt::Display for Table {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        for (index, row) in self.0.iter().enumerate() {
-            writeln!(f, "| {} |", row.join(" | "))?;
-            if index == 0 {
-                writeln!(f, "|{}", "---|".repeat(row.len()))?;
+    fn tell(&self, voice: &Voice, csv: &mut String) {
+        let rows = &voice.measured.rows;
+        for row in rows {
+            csv.push_str(&line(&voice.name, row));
+            if self.args.misses && missed(row) {
+                println!(
+                    "{}: {} `{}` heard `{}` ({:?}, {:.2})",
+                    row.condition,
+                    row.clip,
+                    row.transcript,
+                    row.heard,
+                    row.outcome,
+                    row.likeness()
+                );
             }
         }
-        Ok(())
+        let Limits { open, held } = Limits::default();
+        println!(
+            "\nVoice: {}\n\nMeant what was said, in % (came out right / asked about / wrong; else \
+             nothing; open listening)\n\n{}\nOught to be nothing, at likeness {open} (open) and \
+             {held} (held)\n\n{}",
+            voice.name,
+            tables::understood(rows, &self.args.conditions),
+            tables::refused(rows, open, held)
+        );
+        let Measured {
+            sound,
+            decoded,
+            cpu,
+            ..
+        } = voice.measured;
+        println!(
+            "opened in {} ms; real-time factor {:.4} of all sound ({sound:.0} s), {:.4} of \
+             utterances ({decoded:.0} s); peak memory {:.0} MB{}",
+            voice.opening.as_millis(),
+            cpu / sound.max(0.1),
+            cpu / decoded.max(0.1),
+            voice.memory,
+            voice.size.map_or_else(String::new, |bytes| format!(
+                "; {:.1} MB on disk",
+                bytes as f64 / 1e6
+            )),
+        );
     }
-}
-
-fn table(header: &[&str]) -> Table {
-    Table(vec![header.iter().map(|h| (*h).to_owned()).collect()])
-}
-
-fn understood_row(set: &str, condition: &str, score: &Score) -> Vec<String> {
-    let share = |n: usize| format!("{:.1}", 100.0 * n as f64 / score.clips.max(1) as f64);
-    let nothing = score.clips - score.right - score.asked - score.wrong;
-    vec![
-        set.into(),
-        condition.into(),
-        score.clips.to_string(),
-        share(score.words),
-        share(score.right),
-        share(score.asked),
-        share(score.wrong),
-        share(nothing),
-    ]
-}
-
-fn refused_row(set: &str, condition: &str, score: &Score) -> Vec<String> {
-    let taken = score.accepted;
-    let minutes = score.other_seconds / 60.0;
-    vec![
-        set.into(),
-        condition.into(),
-        format!("{minutes:.1}"),
-        taken.to_string(),
-        format!("{:.2}", taken as f64 / minutes.max(0.01)),
-    ]
 }
 
 fn missed(row: &Row) -> bool {
@@ -315,22 +305,42 @@ fn missed(row: &Row) -> bool {
     }
 }
 
-fn line(voice: &str, condition: &str, row: &Row) -> String {
+const HEADER: &str = "voice,condition,set,trained,context,clip,half,ours,transcript,heard,understood,\
+                      outcome,likeness,sounds,worse,lead,fill,pace,phones,loud,fillers,any,seconds\n";
+
+fn line(voice: &str, row: &Row) -> String {
+    let fit = row.fit.as_ref().filter(|fit| !fit.ways.is_empty());
+    let figures = fit.map_or_else(
+        || ",,,,,,,,,".to_owned(),
+        |fit| {
+            format!(
+                "{:.3},{},{:.3},{:.3},{:.3},{:.4},{},{:.2},{},{:.2}",
+                row.likeness(),
+                fit.sounds(),
+                fit.worse(),
+                fit.lead.min(99.0),
+                fit.fill(),
+                fit.pace(),
+                fit.phones,
+                fit.loud,
+                fit.fillers(),
+                fit.anything.seconds
+            )
+        },
+    );
     format!(
-        "{voice},{condition},{},{},{},{},{},{:?},{},{:.3},{:.3},{:.3},{},{:.2},{:.2},{:.2}\n",
+        "{voice},{},{},{},{},{},{},{},{},{},{},{:?},{figures},{:.2}\n",
+        row.condition,
         row.set,
+        row.trained,
+        row.context.name(),
         row.clip,
+        u8::from(row.judged()),
         row.ours,
         row.transcript,
         row.heard,
+        row.understood,
         row.outcome,
-        row.sounds,
-        row.worse,
-        row.margin,
-        row.likeness,
-        row.second,
-        row.seconds[0],
-        row.seconds[1],
-        row.seconds[2]
+        row.seconds
     )
 }

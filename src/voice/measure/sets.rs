@@ -1,8 +1,9 @@
 //! Recordings to measure on: folders with a `manifest.tsv` (path, transcript, speaker).
 //!
-//! WAV and FLAC. A clip whose transcript can be said in the context ought to be understood; one
-//! without, or with no word of the context's grammar in it, ought to be nothing. What lies between
-//! (our words in an order nobody says) proves neither and is left out.
+//! WAV and FLAC. A clip whose transcript can be said ought to be understood, in the context in which
+//! it would be asked for; one without a transcript, or with no word of the grammar of readings in it,
+//! ought to be nothing there. What lies between (our words in an order nobody says) proves neither
+//! and is left out. What the voice was trained on is left out, or told apart where noise is short.
 
 use std::{
     collections::BTreeSet,
@@ -19,8 +20,14 @@ use crate::{
     },
 };
 
-/// Sets of which only a tenth of the speakers was kept out of training.
+/// Sets of which only a tenth of the speakers was kept out of training (`lab/align.py`).
 const PARTLY_TRAINED: [&str; 2] = ["an4", "speech_commands"];
+/// Sets trained on as a whole.
+const TRAINED: [&str; 1] = ["natospell_timkahn"];
+/// Sets of noise: a fifth of the clips was kept out of training, and one whose licence did not
+/// allow it (`lab/augment.py`).
+const NOISE: &str = "noise";
+const NOISE_KEPT_OUT: &str = "helicopter.wav";
 
 /// One recording.
 #[derive(Debug, Clone)]
@@ -29,7 +36,9 @@ pub struct Clip {
     pub path: PathBuf,
     /// What is said, or nothing.
     pub transcript: String,
-    /// What that means in the context, or nothing that may be said.
+    /// What may be said when it is asked for.
+    pub context: Context,
+    /// What it means there, or nothing that may be said.
     pub meaning: Meaning,
 }
 
@@ -38,68 +47,145 @@ pub struct Clip {
 pub struct Set {
     /// The folder's name.
     pub name: String,
+    /// Whether the voice was trained on these clips.
+    pub trained: bool,
     /// Clips that ought to be understood.
     pub ours: Vec<Clip>,
     /// Clips that ought to be nothing.
     pub others: Vec<Clip>,
 }
 
-/// Every set below a folder, by name. `everyone` takes the speakers trained on, too.
+/// Every set below a folder, by name: each clip in the context given or else in the one in which
+/// it would be asked for. `everyone` takes the speakers trained on, too.
 #[must_use]
-pub fn below(folder: &Path, phrases: &Phrases, context: Context, everyone: bool) -> Vec<Set> {
+pub fn below(
+    folder: &Path,
+    phrases: &Phrases,
+    context: Option<Context>,
+    everyone: bool,
+) -> Vec<Set> {
     let mut folders: Vec<PathBuf> = fs::read_dir(folder)
         .map(|entries| entries.flatten().map(|e| e.path()).collect())
         .unwrap_or_default();
     folders.sort();
-    let graph = phrases.word_graph(context);
-    let vocabulary: BTreeSet<&str> = graph.words().into_iter().collect();
-    folders
-        .iter()
-        .filter_map(|path| set(path, phrases, context, &vocabulary, everyone))
-        .collect()
+    let graph = phrases.word_graph(context.unwrap_or(READINGS[0]));
+    let reader = Reader {
+        phrases,
+        context,
+        vocabulary: graph.words().into_iter().collect(),
+        everyone,
+    };
+    folders.iter().flat_map(|path| reader.sets(path)).collect()
 }
 
-fn set(
-    folder: &Path,
-    phrases: &Phrases,
-    context: Context,
-    vocabulary: &BTreeSet<&str>,
+/// The contexts in which readings are asked for; most often it is the first.
+const READINGS: [Context; 3] = [Context::Ohms, Context::Insulation, Context::Live];
+
+const DIGITS: [&str; 10] = [
+    "zero", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine",
+];
+
+/// Whether it is one of the ten digits.
+#[must_use]
+pub fn is_digit(word: &str) -> bool {
+    DIGITS.contains(&word)
+}
+
+struct Reader<'a> {
+    phrases: &'a Phrases,
+    context: Option<Context>,
+    vocabulary: BTreeSet<&'a str>,
     everyone: bool,
-) -> Option<Set> {
-    let manifest = fs::read_to_string(folder.join("manifest.tsv")).ok()?;
-    let name = folder.file_name()?.to_str()?.to_owned();
-    let partly = !everyone && PARTLY_TRAINED.contains(&name.as_str());
-    let (mut ours, mut others) = (Vec::new(), Vec::new());
-    for line in manifest.lines().skip(1) {
-        let mut fields = line.split('\t');
-        let (Some(path), Some(text)) = (fields.next(), fields.next()) else {
-            continue;
+}
+
+impl Reader<'_> {
+    /// The sets of a folder: one, or two where it holds noise that was trained on and noise that
+    /// was not.
+    fn sets(&self, folder: &Path) -> Vec<Set> {
+        let named = folder.file_name().and_then(|name| name.to_str());
+        let manifest = fs::read_to_string(folder.join("manifest.tsv"));
+        let (Some(name), Ok(manifest)) = (named, manifest) else {
+            return Vec::new();
         };
-        if partly && md5::last_digit(fields.next().unwrap_or_default()) != 0 {
-            continue;
+        let set = |trained| Set {
+            name: name.to_owned(),
+            trained,
+            ours: Vec::new(),
+            others: Vec::new(),
+        };
+        let (mut kept_out, mut trained) = (set(false), set(true));
+        for line in manifest.lines().skip(1) {
+            let mut fields = line.split('\t');
+            let (Some(path), Some(text)) = (fields.next(), fields.next()) else {
+                continue;
+            };
+            let path = folder.join(path);
+            let known = was_trained_on(name, &path, fields.next().unwrap_or_default());
+            if known && !self.everyone && !name.starts_with(NOISE) {
+                continue;
+            }
+            let set = if known { &mut trained } else { &mut kept_out };
+            let clip = self.clip(path, text);
+            match clip.meaning {
+                Meaning::Nothing(_) => {
+                    let mut words = clip.transcript.split_whitespace();
+                    if !words.any(|word| self.vocabulary.contains(word)) {
+                        set.others.push(clip);
+                    }
+                }
+                _ => set.ours.push(clip),
+            }
         }
+        [kept_out, trained]
+            .into_iter()
+            .filter(|set| !set.ours.is_empty() || !set.others.is_empty())
+            .collect()
+    }
+
+    fn clip(&self, path: PathBuf, text: &str) -> Clip {
         // The ICAO's own spellings of two of its words.
         let transcript = text
             .to_lowercase()
             .replace("alfa", "alpha")
             .replace("juliett", "juliet");
-        let meaning = phrases.understand(context, &transcript);
-        let clip = Clip {
-            path: folder.join(path),
+        let (context, meaning) = self.asked(&transcript);
+        Clip {
+            path,
             transcript,
+            context,
             meaning,
-        };
-        match clip.meaning {
-            Meaning::Nothing(_) => {
-                let mut words = clip.transcript.split_whitespace();
-                if !words.any(|word| vocabulary.contains(word)) {
-                    others.push(clip);
-                }
-            }
-            _ => ours.push(clip),
         }
     }
-    Some(Set { name, ours, others })
+
+    /// Where it would be asked for: digits digit by digit, a reading by its kind of test, the
+    /// rest where anything may be said.
+    fn asked(&self, transcript: &str) -> (Context, Meaning) {
+        let mut contexts = match self.context {
+            Some(context) => vec![context],
+            None if transcript.split_whitespace().all(is_digit) => {
+                vec![Context::Digits, READINGS[0]]
+            }
+            None => [&READINGS[..], &[Context::All]].concat(),
+        };
+        contexts.retain(|_| !transcript.is_empty());
+        for context in contexts {
+            let meaning = self.phrases.understand(context, transcript);
+            if !matches!(meaning, Meaning::Nothing(_)) {
+                return (context, meaning);
+            }
+        }
+        let pending = self.context.unwrap_or(READINGS[0]);
+        (pending, Meaning::Nothing("nobody says that".into()))
+    }
+}
+
+/// Whether training heard it: see `lab/README.md`.
+fn was_trained_on(set: &str, path: &Path, speaker: &str) -> bool {
+    if set.starts_with(NOISE) {
+        let name = path.file_name().unwrap_or_default().to_string_lossy();
+        return name != NOISE_KEPT_OUT && !md5::last_digit(&name).is_multiple_of(5);
+    }
+    TRAINED.contains(&set) || PARTLY_TRAINED.contains(&set) && md5::last_digit(speaker) != 0
 }
 
 /// A recording at 16 kHz, -1 to 1; nothing when it cannot be read.
