@@ -4,6 +4,7 @@
 //! is a small trait. A record counts when the ledger has answered; effects are carried out in the
 //! order in which they came. It leaves out what the session decides.
 
+pub mod clock;
 pub mod ledger;
 pub mod listening;
 pub mod settings;
@@ -96,6 +97,9 @@ impl Edges<'_> {
     /// Carries out effects; the ledger's answer is taken at once, before any other event.
     fn carry_out(&mut self, mut state: State, effects: Vec<Effect>) -> State {
         let mut waiting = std::collections::VecDeque::from(effects);
+        // One tone a step, and after what is said was handed over: saying drops what was sounding,
+        // and a tone goes ahead of what is being said.
+        let mut tone: Option<Tone> = None;
         while let Some(effect) = waiting.pop_front() {
             match effect {
                 Effect::Keep(record) => {
@@ -108,13 +112,19 @@ impl Edges<'_> {
                     waiting.extend(more);
                 }
                 Effect::Say(text) => self.voice.say(&text),
-                Effect::Tone(tone) => self.voice.tone(tone),
+                Effect::Tone(new) if tone.is_none_or(|t| t.weight() < new.weight()) => {
+                    tone = Some(new);
+                }
+                Effect::Tone(_) => {}
                 Effect::Listen(context) => self.voice.listen(context),
                 Effect::Pause(pause) => self.voice.pause(pause),
                 Effect::Talk => self.voice.talk(),
                 // The state is shown after every step.
                 Effect::Show | Effect::Quit => {}
             }
+        }
+        if let Some(tone) = tone {
+            self.voice.tone(tone);
         }
         state
     }
@@ -130,12 +140,15 @@ pub fn breaks_off_at(entries: &[Entry]) -> Option<Target> {
     })
 }
 
+/// How long a session may be left before isolation must be proved again, seconds. The bound is
+/// ours: long enough for a crash or a battery change, too short for a lunch with the lock out of
+/// sight.
+const LONG_S: i64 = 30 * 60;
+
 /// Whether the work was left so long that isolation must be proved again: more than half an hour
-/// since the last entry of work, or a clock that went back. The bound is ours: long enough for a
-/// crash or a battery change, too short for a lunch with the lock out of sight.
+/// since the last entry of work, or a clock that went back.
 #[must_use]
 pub fn left_long(entries: &[Entry], now: crate::domain::moment::Moment) -> bool {
-    const LONG_S: i64 = 30 * 60;
     let worked = entries.iter().rev().find(|entry| {
         !matches!(
             entry.record,

@@ -93,8 +93,6 @@ fn run(what: &str, seeds: &[Vec<u8>], share: u64, read: impl Fn(&[u8])) {
         slowest = slowest.max(began.elapsed());
     }
     println!("{what}: {cases} cases, the slowest {slowest:?}");
-    // Generous: a machine with much else to do stops a test for seconds at a time.
-    assert!(slowest < Duration::from_secs(60), "{what}: {slowest:?}");
 }
 
 fn small_log() -> Vec<u8> {

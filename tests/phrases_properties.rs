@@ -120,6 +120,7 @@ proptest! {
             board: board.map(|b| BoardId::new(&b).expect("letters and digits")),
             circuit: way.map(|way| CircuitNo::new(way, line).expect("1 to 199")),
             point: point.map(PointNo),
+            spur: point.is_some_and(|n| n % 3 == 0),
             name: None,
         };
         prop_assume!(place != Place::default());

@@ -8,3 +8,7 @@ mod chance;
 mod days;
 #[path = "sessions/noise.rs"]
 mod noise;
+#[path = "sessions/said.rs"]
+mod said;
+#[path = "sessions/screens.rs"]
+mod screens;

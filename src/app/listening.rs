@@ -93,7 +93,10 @@ fn pass_on(told: &Receiver<VoiceEvent>, send: &Sender<Event>, clips: &Clips) {
                 lost = false;
                 Event::DeviceFound
             }
-            VoiceEvent::Found(_) | VoiceEvent::Dropped(_) => continue,
+            VoiceEvent::Found(_) => continue,
+            VoiceEvent::Dropped(ms) => Event::SoundLost(ms),
+            VoiceEvent::NoSpeech => Event::NoSpeech,
+            VoiceEvent::Deaf(on) => Event::Deaf(on),
             VoiceEvent::Over => return,
         };
         if send.send(event).is_err() {

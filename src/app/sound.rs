@@ -98,6 +98,10 @@ impl Voice for Sound {
     }
 
     fn talk(&mut self) {
+        // Whoever presses wants to speak: the tool falls silent for it.
+        if let Some(speaker) = &self.speaker {
+            speaker.hush();
+        }
         if let Some(ear) = &self.ear {
             ear.once();
         }

@@ -17,12 +17,13 @@ use super::{
 use crate::{
     app::{
         self, Edges, Events, Show, Voice,
+        clock::Clock,
         ledger::{JournalLedger, wall_clock},
         listening::{self, Where},
         settings,
         sound::Sound,
     },
-    domain::plan::Job,
+    domain::{plan::Job, record::Record},
     journal::{
         Journal, JournalError,
         clips::{Clips, Keeping},
@@ -117,7 +118,42 @@ pub fn run(args: &Args) -> Result<(), Failure> {
     if open > 0 {
         eprintln!("still in: {open} temporary works; `handsfull review` lists them");
     }
-    Ok(())
+    not_kept(end.unkept())
+}
+
+/// What was to be kept and is not on the medium is told one by one, and is a failure.
+fn not_kept(lost: &[Record]) -> Result<(), Failure> {
+    if lost.is_empty() {
+        return Ok(());
+    }
+    for record in lost {
+        eprintln!("NOT KEPT: {}", in_words(record));
+    }
+    let message = format!("{} entries could not be written to the log", lost.len());
+    Err(Failure::new(Kind::Log, message).hint(
+        "what was kept before is on disk; make room, then `handsfull field` asks for the rest",
+    ))
+}
+
+/// A record on one line, for whoever reads that it was lost.
+fn in_words(record: &Record) -> String {
+    match record {
+        Record::Reading(reading) => {
+            let unit = reading.unit.as_deref().unwrap_or_default();
+            format!("{} = {} {unit}", reading.target, reading.value)
+        }
+        Record::Skipped { target, reason, .. } => format!("{target} left out: {reason}"),
+        Record::WorkIn { work, .. } => format!("in: {}", work.kind.words()),
+        Record::WorkOut { work, .. } => format!("out: {}", work.kind.words()),
+        Record::Acknowledged { stage, .. } => format!("{} acknowledged", stage.title()),
+        Record::ProvedDead { board, with, .. } => format!("{board} proved dead: {with}"),
+        Record::Note { text, .. } => format!("note: {text}"),
+        Record::Incident { what } => what.clone(),
+        Record::SessionOpened { .. } => "the session began".into(),
+        Record::SessionClosed { .. } => "the session ended".into(),
+        Record::StageClosed { stage, .. } => format!("{} closed", stage.title()),
+        other => format!("{other:?}"),
+    }
 }
 
 /// A job with its open log.
@@ -222,6 +258,7 @@ impl Session {
             let mut keyboard = AtKeyboard {
                 keyboard: Keyboard::new(keymap, signals, ear),
                 redraw: Rc::clone(&screen.redraw),
+                clock: Clock::default(),
             };
             Ok(app::run(
                 self.setup,
@@ -249,7 +286,10 @@ impl Session {
                 })
             });
             let stdin = BufReader::new(io::stdin());
-            let mut lines = ByLines(Lines::new(stdin, keymap, signals, ear, understand));
+            let mut lines = ByLines(
+                Lines::new(stdin, keymap, signals, ear, understand),
+                Clock::default(),
+            );
             let mut plain = AsText(Plain::new(io::stdout(), COLUMNS, echo));
             Ok(app::run(
                 self.setup,
@@ -319,11 +359,18 @@ impl<W: Write> Show for OnScreen<W> {
 struct AtKeyboard {
     keyboard: Keyboard,
     redraw: Rc<Cell<bool>>,
+    clock: Clock,
 }
 
 impl Events for AtKeyboard {
     fn next(&mut self) -> Option<Event> {
+        if let Some(event) = self.clock.due() {
+            return Some(event);
+        }
         let event = self.keyboard.next_event();
+        if matches!(event, Some(Event::Tick(_))) {
+            self.clock.look();
+        }
         if self.keyboard.take_redraw() {
             self.redraw.set(true);
         }
@@ -331,11 +378,18 @@ impl Events for AtKeyboard {
     }
 }
 
-struct ByLines(Lines);
+struct ByLines(Lines, Clock);
 
 impl Events for ByLines {
     fn next(&mut self) -> Option<Event> {
-        self.0.next_event()
+        if let Some(event) = self.1.due() {
+            return Some(event);
+        }
+        let event = self.0.next_event();
+        if matches!(event, Some(Event::Tick(_))) {
+            self.1.look();
+        }
+        event
     }
 }
 

@@ -54,8 +54,10 @@ pub struct Place {
     pub board: Option<BoardId>,
     /// `circuit twelve`, `way four line two`.
     pub circuit: Option<CircuitNo>,
-    /// `point three`, `socket three`, `spur` is a point like any other.
+    /// `point three`, `socket three`, `spur three`: a spur has a number like any other point.
     pub point: Option<PointNo>,
+    /// `spur off three`: not that point, but the one on a spur that leaves there.
+    pub spur: bool,
     /// A name of the job's own ("boiler house"), in lower case.
     pub name: Option<String>,
 }

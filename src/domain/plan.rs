@@ -362,6 +362,8 @@ pub struct Circuit {
     pub kind: CircuitKind,
     /// Three-phase.
     pub three_phase: bool,
+    /// A three-phase circuit whose cable has no neutral (motors).
+    pub without_neutral: bool,
     /// The cable.
     pub cable: Cable,
     /// Whole length: board to furthest point, or the whole loop of a ring.

@@ -56,6 +56,21 @@ pub enum Between {
     OtherCircuits,
 }
 
+impl Between {
+    /// Whether one end is the neutral alone.
+    #[must_use]
+    pub fn to_neutral(self) -> bool {
+        matches!(
+            self,
+            Between::LineNeutral
+                | Between::NeutralEarth
+                | Between::L1Neutral
+                | Between::L2Neutral
+                | Between::L3Neutral
+        )
+    }
+}
+
 /// A kind of test. In files it is [`TestKind::word`]: `r1r2`, `insulation-line-neutral`, ...
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, PartialOrd, Ord, Serialize, Deserialize)]
 #[serde(try_from = "String", into = "String")]

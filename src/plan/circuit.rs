@@ -101,6 +101,14 @@ fn circuit(
     // Without a kind the rest is still examined, as the kind that asks for everything.
     let assumed = kind.unwrap_or(CircuitKind::Radial);
     let three_phase = phases(f, no, supply, mistakes);
+    let without_neutral = !f.flag("neutral", true, mistakes);
+    if without_neutral && !three_phase {
+        f.missing(
+            "phases",
+            "a circuit without neutral has three: phases = 3",
+            mistakes,
+        );
+    }
     let cable = cable::cable(f, assumed, mistakes);
     let length = cable::length(f, mistakes);
     let device = device(f, mistakes);
@@ -119,6 +127,7 @@ fn circuit(
         name,
         kind: kind?,
         three_phase,
+        without_neutral: without_neutral && three_phase,
         cable: cable?,
         length: length?,
         device: device?,

@@ -203,6 +203,9 @@ fn circuit(out: &mut String, circuit: &Circuit) -> fmt::Result {
     if circuit.three_phase {
         writeln!(out, "phases = 3")?;
     }
+    if circuit.without_neutral {
+        writeln!(out, "neutral = false")?;
+    }
     cable(out, circuit)?;
     for line in length_keys(&circuit.length) {
         writeln!(out, "{line}")?;

@@ -1,7 +1,7 @@
 //! Acts carried out: what yes, no, a value or a pick does at each prompt.
 //!
 //! Promises: the only way from a value to the log leads through yes at [`Prompt::Confirm`], and,
-//! out of range, through a reason at [`Prompt::Question`] as well. Keys and voice come through the
+//! out of range or in doubt, through a reason at [`Prompt::Question`] as well. Keys and voice come through the
 //! same door.
 
 use crate::{
@@ -128,10 +128,7 @@ impl State {
                 let by = self.setup.tester.clone();
                 self.keep(Record::WorkIn { work, by }, out);
             }
-            Prompt::TakeOut(work) => {
-                let by = self.setup.tester.clone();
-                self.keep(Record::WorkOut { work, by }, out);
-            }
+            Prompt::TakeOut(work) => self.took_out(work, out),
             Prompt::Hold(hold) => self.keep(
                 Record::Acknowledged {
                     stage: Stage::Insulation,
@@ -148,6 +145,8 @@ impl State {
                 self.refuse("Say or pick: keep as found, or measure again.", out)
             }
             Prompt::Ask(_) => self.command(Control::SayAgain, how, out),
+            // A list of one is a question: yes takes it.
+            Prompt::List(list) if list.items.len() == 1 => self.picked(1, how, out),
             Prompt::List(_) | Prompt::Page(_) => self.command(Control::Next, how, out),
             Prompt::Menu => self.pop(out),
             Prompt::Call(text) => self.call_typed(&text, out),
@@ -225,7 +224,7 @@ impl State {
     }
 
     /// A value for the test in hand: shown and read back, never kept by itself.
-    fn value(&mut self, entry: Entry, how: &How, out: &mut Vec<Effect>) {
+    pub(super) fn value(&mut self, entry: Entry, how: &How, out: &mut Vec<Effect>) {
         let ask = match self.stack.first() {
             Some(Prompt::Ask(ask)) => ask.clone(),
             _ => {
@@ -266,7 +265,7 @@ impl State {
     pub(super) fn read_back(&mut self, candidate: Candidate, out: &mut Vec<Effect>) {
         self.pop_all();
         self.note("");
-        let off = candidate.assessment.verdict.questioned();
+        let off = candidate.assessment.questioned();
         out.push(Effect::Tone(if off {
             Tone::OutOfRange
         } else {
@@ -282,7 +281,7 @@ impl State {
             ask.misses = 0;
         }
         self.pop_all();
-        if candidate.assessment.verdict.questioned() {
+        if candidate.assessment.questioned() {
             self.note("");
             self.push(Prompt::Question(Box::new(candidate)), out);
         } else {
@@ -322,7 +321,7 @@ impl State {
         })
     }
 
-    fn picked(&mut self, n: u8, how: &How, out: &mut Vec<Effect>) {
+    pub(super) fn picked(&mut self, n: u8, how: &How, out: &mut Vec<Effect>) {
         match self.top() {
             Prompt::List(list) => match list.pick(n).cloned() {
                 Some(choice) => self.choose(choice, how, out),
@@ -340,7 +339,7 @@ impl State {
         }
     }
 
-    fn choose(&mut self, choice: Choice, how: &How, out: &mut Vec<Effect>) {
+    pub(super) fn choose(&mut self, choice: Choice, how: &How, out: &mut Vec<Effect>) {
         match choice {
             Choice::Candidate(candidate) => self.read_back(*candidate, out),
             Choice::Meaning(meaning) => {
@@ -382,6 +381,12 @@ impl State {
             Choice::Out(work) => self.push(Prompt::TakeOut(work), out),
             Choice::In(work) => self.push(Prompt::Fit(work), out),
         }
+    }
+
+    /// The tester says that a work is out.
+    pub(super) fn took_out(&mut self, work: crate::domain::record::Work, out: &mut Vec<Effect>) {
+        let by = self.setup.tester.clone();
+        self.keep(Record::WorkOut { work, by }, out);
     }
 
     /// The test in hand comes later; the next one now.
@@ -428,6 +433,10 @@ fn leads_away(act: &Act) -> bool {
                 | Control::LinkIn
                 | Control::LinkOut
                 | Control::Note
+                | Control::SameAsLast
+                | Control::SameAs(_)
+                | Control::LeaveOut(_)
+                | Control::KeepFor(_)
                 | Control::Test(_)
                 | Control::Stage(_)
         ),

@@ -1,13 +1,15 @@
-//! Commands that work at every prompt, and going to a place or a test called by name.
+//! Commands that work at every prompt: again, back, next, links in and out, correction, the same
+//! value as elsewhere.
 //!
-//! Promises: going away never keeps anything; what was not affirmed is dropped with a line that
-//! says so. Live tests stay shut until the dead ones are through and every work is out.
+//! Promises: no command keeps a value; what was not affirmed is dropped with a line that says so.
+//! Going to a place or a test by name stands in `calls`.
 
 use crate::{
     domain::{
-        place::{CircuitNo, Line, Place, PointNo},
+        kept::Value,
+        place::PointNo,
         record::{Record, Work, WorkKind},
-        test::{Stage, Target, TestKind},
+        test::Target,
     },
     speech::meaning::{Control, Meaning},
 };
@@ -15,8 +17,7 @@ use crate::{
 use super::{
     act::How,
     effect::{Effect, Tone},
-    gates::is_live,
-    prompt::{Choice, DeadStep, Prompt},
+    prompt::{Choice, DeadStep, Entry, Prompt},
     state::State,
     trade, utter,
 };
@@ -80,6 +81,24 @@ impl State {
             // These come as acts of their own; here only when picked out of a list.
             Control::Test(test) => self.take_up(test, out),
             Control::Stage(stage) => self.take_up_stage(stage, out),
+            // Received is not yes (ICAO Annex 10 volume II keeps the two words apart).
+            Control::Received => self.refuse(
+                match self.top() {
+                    Prompt::Confirm(_) | Prompt::Question(_) => {
+                        "Roger means received, not yes: nothing kept."
+                    }
+                    _ => "Roger means received, not yes or done.",
+                },
+                out,
+            ),
+            Control::Same => self.refuse(
+                "Same as what? Say: same as last point, or same as point two.",
+                out,
+            ),
+            Control::SameAsLast => self.same_as(None, how, out),
+            Control::SameAs(point) => self.same_as(Some(point), how, out),
+            Control::LeaveOut(n) => self.leave_out_for(n, how, out),
+            Control::KeepFor(n) => self.keep_for(n, how, out),
             Control::Reason(_) | Control::Confirmed | Control::NotConfirmed => {
                 self.refuse("Not here.", out);
             }
@@ -113,13 +132,57 @@ impl State {
             out.push(Effect::Listen(self.context()));
             return;
         }
+        let mut dropped = false;
         if let Some(Prompt::Ask(ask)) = self.stack.first_mut() {
-            ask.by_digit = false;
+            dropped |= std::mem::take(&mut ask.by_digit);
             let target = ask.target.clone();
-            self.drafts.remove(&target);
-            self.note("Dropped.");
+            dropped |= self.drafts.remove(&target).is_some();
         }
-        out.push(Effect::Show);
+        if dropped {
+            self.note("Dropped.");
+            out.push(Effect::Show);
+            out.push(Effect::Listen(self.context()));
+        } else {
+            // What is kept stays in the log; a newer entry replaces it.
+            self.refuse(
+                "Nothing to drop. Correction replaces the last kept value.",
+                out,
+            );
+        }
+    }
+
+    /// The value that another point of this circuit has, said by its place: read back like any
+    /// other.
+    fn same_as(&mut self, point: Option<PointNo>, how: &How, out: &mut Vec<Effect>) {
+        let target = match self.stack.first() {
+            Some(Prompt::Ask(ask)) if ask.target.test.unit().is_some() => ask.target.clone(),
+            _ => return self.refuse("No figure is asked for here.", out),
+        };
+        let kept = &self.standing.kept;
+        let like = |t: &Target| {
+            let at = (t.test, &t.board, t.circuit) == (target.test, &target.board, target.circuit);
+            at && *t != target && (point.is_none() || t.point == point)
+        };
+        let found = kept
+            .iter()
+            .filter(|(t, _)| like(t))
+            .max_by_key(|(t, _)| kept.entry(t));
+        match found {
+            Some((_, Value::Reading(reading))) => {
+                let entry = Entry::Reading(reading.clone());
+                self.value(entry, how, out);
+            }
+            _ => {
+                let at = point.map_or("before it".to_owned(), |p| format!("at point {p}"));
+                self.refuse(
+                    format!(
+                        "No {} is kept here {at}: say the figure.",
+                        target.test.title()
+                    ),
+                    out,
+                );
+            }
+        }
     }
 
     /// "Correction": over a value not yet affirmed it asks for another; otherwise the last value
@@ -148,10 +211,18 @@ impl State {
     }
 
     pub(super) fn correction(&mut self, inner: Meaning, how: &How, out: &mut Vec<Effect>) {
+        // A place called again needs no value to go back to.
+        if let Meaning::Place(place) = &inner {
+            return self.go_to(place, out);
+        }
         self.correct_last(out);
         // The reading that came with the word goes where the old one was, and is read back.
         if matches!(self.top(), Prompt::Ask(_)) {
             self.meaning(inner, how, out);
+        } else if self.called.is_some() {
+            // Something has to be done before that value can be asked for again.
+            let text = super::entry::meaning_text(&inner);
+            self.note(format!("{} {text} not taken: say it then.", self.notice));
         }
     }
 
@@ -264,13 +335,24 @@ impl State {
             super::state::EarState::None => self.refuse("Keypad only: there is no voice.", out),
             super::state::EarState::Lost => self.refuse("The microphone is gone.", out),
             _ => {
-                out.push(Effect::Tone(Tone::Listening));
                 out.push(Effect::Talk);
+                out.push(Effect::Tone(Tone::Listening));
             }
         }
     }
 
     fn link_in(&mut self, out: &mut Vec<Effect>) {
+        match self.top().clone() {
+            Prompt::Fit(work) if is_link(work.kind) => {
+                let by = self.setup.tester.clone();
+                return self.keep(Record::WorkIn { work, by }, out);
+            }
+            Prompt::TakeOut(work) if is_link(work.kind) => return self.stays_in(&work, out),
+            Prompt::Fit(work) | Prompt::TakeOut(work) => {
+                return self.refuse(no_link(work.kind), out);
+            }
+            _ => {}
+        }
         let needed = self
             .wanted()
             .map(|t| trade::works_needed(self.job(), &t))
@@ -308,6 +390,11 @@ impl State {
     }
 
     fn link_out(&mut self, out: &mut Vec<Effect>) {
+        match self.top().clone() {
+            Prompt::TakeOut(work) if is_link(work.kind) => return self.took_out(work, out),
+            Prompt::TakeOut(work) => return self.refuse(no_link(work.kind), out),
+            _ => {}
+        }
         match self.standing.works_in.as_slice() {
             [] => self.refuse("No link or work is in.", out),
             [one] => {
@@ -346,178 +433,20 @@ impl State {
             _ => self.next_target(),
         }
     }
+}
 
-    /// A circuit typed on the keypad: `7`, `4.2` for way 4 line 2, `7+3` for its point 3.
-    pub(super) fn call_typed(&mut self, text: &str, out: &mut Vec<Effect>) {
-        let (circuit, point) = match text.split_once('+') {
-            Some((circuit, point)) => (circuit, point.parse().ok().map(PointNo)),
-            None => (text, None),
-        };
-        let (way, line) = match circuit.split_once('.') {
-            Some((way, "1")) => (way, Some(Line::L1)),
-            Some((way, "2")) => (way, Some(Line::L2)),
-            Some((way, "3")) => (way, Some(Line::L3)),
-            Some(_) => return self.refuse("After the point: line 1, 2 or 3.", out),
-            None => (circuit, None),
-        };
-        let circuit = way
-            .parse()
-            .ok()
-            .and_then(|way| CircuitNo::new(way, line).ok());
-        if circuit.is_none() && point.is_none() {
-            return self.refuse("Type the number of the circuit, then enter.", out);
-        }
-        let place = Place {
-            circuit,
-            point,
-            ..Place::default()
-        };
-        self.go_to(&place, out);
-    }
+/// Whether that work is a link that goes in and comes out; the others are undone otherwise.
+fn is_link(kind: WorkKind) -> bool {
+    matches!(
+        kind,
+        WorkKind::LineEarthLink
+            | WorkKind::CrossLineNeutral
+            | WorkKind::CrossLineEarth
+            | WorkKind::LivesJoined
+    )
+}
 
-    /// Goes to a place called by name; what was not said is where the tester stands.
-    pub(super) fn go_to(&mut self, place: &Place, out: &mut Vec<Effect>) {
-        let named = place.name.as_ref().and_then(|name| {
-            self.job()
-                .place_names
-                .iter()
-                .find(|p| p.name == *name)
-                .cloned()
-        });
-        if let (Some(name), None) = (&place.name, &named) {
-            return self.refuse(format!("`{name}` is no place of this job."), out);
-        }
-        let called = place
-            .board
-            .clone()
-            .or(named.as_ref().and_then(|n| n.board.clone()));
-        let circuit = place.circuit.or(named.as_ref().and_then(|n| n.circuit));
-        let Some(board) = called.clone().or_else(|| self.here.board.clone()) else {
-            return self.refuse("Call the board first.", out);
-        };
-        let Some(plan) = self.job().board(&board) else {
-            return self.refuse(format!("There is no board {board} in this job."), out);
-        };
-        let circuit = match (circuit, &called) {
-            (Some(no), _) if plan.circuits.iter().any(|c| c.no == no) => Some(no),
-            (Some(no), _) => {
-                return self.refuse(format!("There is no circuit {no} on {board}."), out);
-            }
-            // A board alone is the whole board; a point alone is on the circuit in hand.
-            (None, Some(_)) => None,
-            (None, None) => self.here.circuit,
-        };
-        if let (Some(point), Some(no)) = (place.point, circuit) {
-            let known = plan
-                .circuits
-                .iter()
-                .any(|c| c.no == no && c.points.iter().any(|p| p.no == point));
-            if !known {
-                return self.refuse(format!("There is no point {point} on {board}/{no}."), out);
-            }
-        }
-        let there = |t: &&Target| {
-            t.board.as_ref() == Some(&board)
-                && (circuit.is_none() || t.circuit == circuit)
-                && (place.point.is_none() || t.point == place.point)
-        };
-        let stage = self.here.stage;
-        let live = self.live_shut().is_some();
-        let found = self
-            .open()
-            .filter(there)
-            .filter(|t| !(live && is_live(t.test)))
-            // A point called by number is wanted for the test in hand, where it has one.
-            .min_by_key(|t| place.point.is_some() && Some(t.test.stage()) != stage)
-            .cloned();
-        let again = self
-            .setup
-            .required()
-            .iter()
-            .find(|t| place.point.is_some() && there(t) && Some(t.test.stage()) == stage)
-            .cloned();
-        match found.or(again) {
-            Some(target) => self.call(target, out),
-            None => {
-                self.here.board = Some(board.clone());
-                self.here.circuit = circuit;
-                let at = circuit.map_or(board.to_string(), |c| format!("{board}/{c}"));
-                self.refuse(
-                    format!("Nothing is open at {at}. Call a test to repeat it."),
-                    out,
-                );
-            }
-        }
-    }
-
-    /// Why live tests are shut, if they are.
-    pub(super) fn live_shut(&self) -> Option<String> {
-        if !self.job().rules.live_tests {
-            return Some("Live tests are not part of this job.".into());
-        }
-        let dead = self.open_dead().count();
-        let works = self.standing.works_in.len();
-        (dead > 0 || works > 0)
-            .then(|| format!("Live tests stay shut: {dead} dead tests open, {works} works in."))
-    }
-
-    /// Takes up a kind of test: here if it can be done here, else the first that is open.
-    pub(super) fn take_up(&mut self, test: TestKind, out: &mut Vec<Effect>) {
-        let here = |t: &&Target| {
-            t.test == test && t.board == self.here.board && t.circuit == self.here.circuit
-        };
-        let all = self.setup.required();
-        let found = self
-            .open()
-            .find(here)
-            .or_else(|| all.iter().find(here))
-            .or_else(|| self.open().find(|t| t.test == test))
-            .or_else(|| all.iter().find(|t| t.test == test))
-            .cloned();
-        match found {
-            Some(target) => self.call(target, out),
-            None => self.refuse(format!("{} is not needed in this job.", test.title()), out),
-        }
-    }
-
-    /// Takes up a stage: at this circuit if something is open in it, else the first that is open.
-    pub(super) fn take_up_stage(&mut self, stage: Stage, out: &mut Vec<Effect>) {
-        let here = |t: &&Target| {
-            t.test.stage() == stage && t.board == self.here.board && t.circuit == self.here.circuit
-        };
-        let found = self
-            .open()
-            .find(here)
-            .or_else(|| self.open().find(|t| t.test.stage() == stage))
-            .cloned();
-        match found {
-            Some(target) => self.call(target, out),
-            None => self.refuse(format!("Nothing is open in: {}.", stage.title()), out),
-        }
-    }
-
-    /// Goes to one test.
-    pub(super) fn call(&mut self, target: Target, out: &mut Vec<Effect>) {
-        if is_live(target.test)
-            && let Some(why) = self.live_shut()
-        {
-            return self.refuse(why, out);
-        }
-        if matches!(self.top(), Prompt::Trouble(_)) || !self.pending.is_empty() {
-            return self.refuse("Try again (Enter), or drop it (-).", out);
-        }
-        let dropped = self.stack.iter().find_map(|p| match p {
-            Prompt::Confirm(c) | Prompt::Question(c) => Some(c.entry.to_string()),
-            _ => None,
-        });
-        if let Some(text) = dropped {
-            self.note(format!("{text} was not affirmed and is not kept."));
-        }
-        if self.stack.iter().any(|p| matches!(p, Prompt::Standby)) {
-            out.push(Effect::Pause(false));
-        }
-        self.passed.retain(|(t, _)| *t != target);
-        self.called = Some(target);
-        self.advance(out);
-    }
+/// "Link in" or "link out" where something else is asked for.
+fn no_link(kind: WorkKind) -> String {
+    format!("Asked is: {}. Say done, or negative.", kind.words())
 }

@@ -20,6 +20,20 @@ pub enum Tone {
     Saved,
 }
 
+impl Tone {
+    /// Which of several tones of one step is sounded: the one that asks most of the tester.
+    #[must_use]
+    pub fn weight(self) -> u8 {
+        match self {
+            Tone::Listening => 0,
+            Tone::Understood => 1,
+            Tone::Saved => 2,
+            Tone::Refused => 3,
+            Tone::OutOfRange => 4,
+        }
+    }
+}
+
 /// One thing for an edge to do.
 #[derive(Debug, Clone, PartialEq)]
 pub enum Effect {

@@ -60,12 +60,20 @@ pub enum Event {
     Level(u8),
     /// Somebody is speaking now, or no longer.
     Speaking(bool),
+    /// The tool itself sounds, or no longer: what is said meanwhile is not listened to.
+    Deaf(bool),
+    /// Milliseconds of sound that were lost because the machine was too slow.
+    SoundLost(u64),
+    /// Something began like speech and was too short to be any.
+    NoSpeech,
     /// The microphone is gone.
     DeviceLost,
     /// The microphone is back.
     DeviceFound,
     /// The wall clock jumped; how, in words.
     ClockChanged(String),
+    /// So long has passed, asleep or by the clock, that isolation must be proved again.
+    LeftLong,
     /// The session is asked to end.
     Stop(StopCause),
     /// The terminal was resized or the program continued: show again.

@@ -136,6 +136,11 @@ impl State {
             }
             _ => self.stand_at(&target),
         }
+        // A test called by name is not forgotten because something has to be done before it.
+        if self.called.as_ref() == Some(&target) && !matches!(prompt, Prompt::Ask(_)) {
+            let then = format!("Then: {}.", super::utter::target_text(&target));
+            self.note(format!("{} {then}", self.notice).trim_start());
+        }
         self.replace(prompt, out);
     }
 

@@ -57,7 +57,9 @@ impl State {
                         .standing
                         .acknowledged
                         .get(&self.gate_at(stage, Some(b)))
-                        .is_none_or(|no| *no < self.standing.session_began)
+                        .is_none_or(|no| {
+                            *no < self.lapsed_at.unwrap_or(self.standing.session_began)
+                        })
             });
         !lapsed
             && self

@@ -56,6 +56,7 @@ impl State {
             return;
         };
         self.standing.apply(no, &record);
+        self.unkept.retain(|lost| !makes_good(&record, lost));
         self.move_on |= self.after(no, &record, failed, out);
         self.settle(out);
     }
@@ -91,7 +92,14 @@ impl State {
         match record {
             Record::Reading(reading) => {
                 out.push(Effect::Tone(Tone::Saved));
-                self.note(format!("Kept: {} (entry {no}).", value_text(reading)));
+                let as_found = reading.kept_as_found.as_ref();
+                self.note(match as_found {
+                    Some(why) => format!(
+                        "Kept as found: {}, {why} (entry {no}).",
+                        value_text(reading)
+                    ),
+                    None => format!("Kept: {} (entry {no}).", value_text(reading)),
+                });
                 self.done_with(&reading.target);
                 if let (
                     TestKind::Insulation(_) | TestKind::Separation,
@@ -108,8 +116,8 @@ impl State {
                     self.mark_repeats(no, &reading.target);
                 }
             }
-            Record::Skipped { target, .. } => {
-                self.note(format!("Left out: {}.", target.test.title()));
+            Record::Skipped { target, reason, .. } => {
+                self.note(format!("Left out: {}, {reason}.", target.test.title()));
                 self.done_with(target);
             }
             Record::Acknowledged {
@@ -183,6 +191,7 @@ impl State {
         self.awaiting = false;
         if self.ending {
             // Nothing more can be done here; what was kept before is on disk.
+            self.unkept.extend(self.pending.drain(..).map(|p| p.record));
             self.ended = true;
             out.push(Effect::Quit);
             return;
@@ -193,10 +202,39 @@ impl State {
 
     /// The tester lets go of a record that could not be kept, with all that hung on it.
     pub(super) fn drop_pending(&mut self, out: &mut Vec<Effect>) {
-        self.pending.clear();
+        self.unkept.extend(self.pending.drain(..).map(|p| p.record));
         self.note("NOT kept. It is asked again.");
         self.move_on = true;
         self.settle(out);
+    }
+}
+
+/// Whether a record that was kept says what one that was lost would have said, or what took its
+/// place.
+fn makes_good(kept: &Record, lost: &Record) -> bool {
+    match (kept, lost) {
+        (Record::Reading(kept), Record::Reading(lost)) => kept.target == lost.target,
+        (Record::Reading(kept), Record::Skipped { target, .. }) => kept.target == *target,
+        (Record::Skipped { target, .. }, Record::Reading(lost)) => lost.target == *target,
+        (Record::Skipped { target, .. }, Record::Skipped { target: lost, .. }) => target == lost,
+        (Record::WorkIn { work, .. }, Record::WorkIn { work: lost, .. })
+        | (Record::WorkOut { work, .. }, Record::WorkOut { work: lost, .. }) => work == lost,
+        (
+            Record::Acknowledged {
+                stage,
+                board,
+                circuit,
+                ..
+            },
+            Record::Acknowledged {
+                stage: lost_stage,
+                board: lost_board,
+                circuit: lost_circuit,
+                ..
+            },
+        ) => (stage, board, circuit) == (lost_stage, lost_board, lost_circuit),
+        (Record::ProvedDead { board, .. }, Record::ProvedDead { board: lost, .. }) => board == lost,
+        (kept, lost) => kept == lost,
     }
 }
 

@@ -9,8 +9,9 @@ use crate::domain::{
 };
 
 use super::{
+    act::How,
     effect::Effect,
-    gates::{PAGE_COLUMNS, PAGE_LINES},
+    gates::{PAGE_COLUMNS, PAGE_LINES, is_live},
     prompt::{Choice, List, Page, Prompt, paginate},
     state::State,
     utter,
@@ -97,7 +98,59 @@ impl State {
         let items = KEEP
             .map(|(reason, fault)| (reason.to_owned(), Choice::Keep(reason, fault)))
             .into();
-        self.list("Keep as found: why?", items, out);
+        self.list(&self.keep_title(), items, out);
+    }
+
+    /// The list of reasons names the value: it is the last look before it is kept.
+    fn keep_title(&self) -> String {
+        let value = self.questioned().map(|c| c.entry.to_string());
+        format!("Keep {} as found: why?", value.unwrap_or_default())
+    }
+
+    /// A reason for keeping, said in words: picked in the list; at the question it asks once more.
+    pub(super) fn keep_for(&mut self, n: u8, how: &How, out: &mut Vec<Effect>) {
+        let reason = usize::from(n).checked_sub(1).and_then(|n| KEEP.get(n));
+        match (self.top(), reason) {
+            (Prompt::List(list), Some((reason, fault)))
+                if list
+                    .items
+                    .iter()
+                    .any(|(_, c)| matches!(c, Choice::Keep(r, _) if r == reason)) =>
+            {
+                self.choose(Choice::Keep(reason, *fault), how, out);
+            }
+            (Prompt::Question(_), Some((reason, fault))) => {
+                let items = vec![((*reason).to_owned(), Choice::Keep(reason, *fault))];
+                self.list(&self.keep_title(), items, out);
+            }
+            _ => self.refuse("Nothing is kept as found here.", out),
+        }
+    }
+
+    /// A reason for leaving out, said in words: picked in the list; elsewhere it asks once more.
+    pub(super) fn leave_out_for(&mut self, n: u8, how: &How, out: &mut Vec<Effect>) {
+        let Some(reason) = usize::from(n).checked_sub(1).and_then(|n| SKIP.get(n)) else {
+            return self.refuse("There is no such reason.", out);
+        };
+        let listed = |list: &List| {
+            list.items
+                .iter()
+                .any(|(_, c)| matches!(c, Choice::Skip(r) if r == reason))
+        };
+        if matches!(self.top(), Prompt::List(list) if listed(list)) {
+            return self.choose(Choice::Skip(reason), how, out);
+        }
+        let asked = |p: &Prompt| matches!(p, Prompt::Confirm(_) | Prompt::Question(_));
+        if self.stack.iter().any(asked) {
+            return self.refuse("Answer first: keep this value, or measure again.", out);
+        }
+        self.skip_reasons(out);
+        if let Some(Prompt::List(list)) = self.stack.last_mut()
+            && listed(list)
+        {
+            list.items = vec![((*reason).to_owned(), Choice::Skip(reason))];
+            out.push(Effect::Listen(self.context()));
+        }
     }
 
     pub(super) fn skip_reasons(&mut self, out: &mut Vec<Effect>) {
@@ -126,8 +179,8 @@ impl State {
     pub(super) fn list_open(&mut self, out: &mut Vec<Effect>) {
         let here = (&self.here.board, self.here.circuit);
         let mut open: Vec<&Target> = self.open().collect();
-        // Those of the circuit in hand first.
-        open.sort_by_key(|t| (&t.board, t.circuit) != here);
+        // Those of the circuit in hand first; live ones, which stay shut until then, last.
+        open.sort_by_key(|t| (is_live(t.test), (&t.board, t.circuit) != here));
         let title = match open.len() {
             0 => "Nothing is open.".to_owned(),
             n => format!("Open: {n}. Pick one to go there."),
@@ -177,14 +230,15 @@ impl State {
     }
 
     pub(super) fn help(&mut self, out: &mut Vec<Effect>) {
-        let lines: Vec<String> = utter::HELP.iter().map(|l| (*l).to_owned()).collect();
-        let pages = lines.chunks(PAGE_LINES).map(<[String]>::to_vec).collect();
-        if matches!(self.top(), Prompt::Page(page) if page.title == "Keys and words") {
+        let pages = [utter::KEYS, utter::WORDS]
+            .map(|page| page.map(str::to_owned).into())
+            .into();
+        if matches!(self.top(), Prompt::Page(page) if page.title == utter::HELP) {
             return self.pop(out);
         }
         self.push(
             Prompt::Page(Page {
-                title: "Keys and words".into(),
+                title: utter::HELP.into(),
                 pages,
                 page: 0,
             }),

@@ -13,6 +13,7 @@
 //! terminals and clocks: time comes with events.
 
 mod act;
+mod calls;
 mod command;
 mod dead;
 pub mod effect;

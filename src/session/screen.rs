@@ -59,6 +59,8 @@ pub struct View {
     pub status: String,
     /// The reading is out of range, or something is wrong.
     pub alarm: bool,
+    /// The body is all there is to read: it takes the whole screen.
+    pub full: bool,
 }
 
 /// The screen, exactly `height` lines of at most `width` characters.
@@ -69,6 +71,15 @@ pub fn screen(state: &State, width: usize, height: usize) -> Vec<Line> {
         text: cut(text, width),
         weight,
     };
+    if view.full {
+        let head = format!("{}  {}", view.title, view.press);
+        let mut lines = vec![line(&head, Weight::Strong)];
+        lines.extend(view.body.iter().map(|text| line(text, Weight::Plain)));
+        lines.resize(height.saturating_sub(1), line("", Weight::Plain));
+        lines.push(line(&view.status, Weight::Dim));
+        lines.truncate(height);
+        return lines;
+    }
     let mut top = vec![
         line(&view.place, Weight::Strong),
         line(&view.title, Weight::Strong),
@@ -166,13 +177,14 @@ fn status(state: &State) -> String {
         EarState::None => "keypad only".to_owned(),
         EarState::Lost => "MIC GONE, keys only".to_owned(),
         _ if state.stack.iter().any(|p| matches!(p, Prompt::Standby)) => "standby".to_owned(),
+        _ if state.deaf => "mic waits: tool speaks".to_owned(),
         EarState::OnKey => format!("mic {} on key", meter(state.level)),
         EarState::Listening => format!("mic {} open", meter(state.level)),
         EarState::Speech => format!("mic {} HEARING", meter(state.level)),
     };
     match state.standing.works_in.len() {
         0 => ear,
-        n => format!("{ear} | IN: {n} to take out"),
+        n => format!("{ear} | IN: {n}, take out"),
     }
 }
 
@@ -323,7 +335,11 @@ fn out_view(work: &crate::domain::record::Work, view: &mut View) {
     view.body = vec![utter::work_text(work)];
     view.question = question.into();
     view.press = "ENTER done   - not yet   * menu".into();
-    view.say = "done, negative".into();
+    view.say = match head {
+        "TAKE OUT" => "done, link removed, negative",
+        _ => "done, negative",
+    }
+    .into();
 }
 
 /// What lies over the step of the work.
@@ -336,7 +352,11 @@ fn over(state: &State, view: &mut View) {
         Prompt::Question(candidate) => {
             view.alarm = true;
             view.body = findings(candidate);
-            view.input = format!("{}: {}", candidate.entry, verdict(candidate));
+            let lies = match verdict(candidate) {
+                "within the range" => "in range, but in doubt",
+                other => other,
+            };
+            view.input = format!("{}: {lies}", candidate.entry);
             view.question = "Keep as found, or measure again?".into();
             view.press = "1 keep as found  2 again  * menu".into();
             view.say = "keep as found, measure again".into();
@@ -349,15 +369,17 @@ fn over(state: &State, view: &mut View) {
                 .map(|(n, (text, _))| cut(&format!("{n} {text}"), super::gates::PAGE_COLUMNS))
                 .collect();
             view.question = match list.pages() {
+                1 if list.items.len() == 1 => "This one?".into(),
                 1 => String::new(),
                 n => format!("Page {} of {n}", list.page + 1),
             };
             view.press = match (list.items.len(), list.pages()) {
                 (0, _) => "- back".into(),
+                (1, _) => "ENTER or 1 yes   - no".into(),
                 (_, 1) => "1-6 pick   - none".into(),
                 _ => "1-6 pick   + next page   - none".into(),
             };
-            view.say = "first, second, next, back".into();
+            view.say = list_words(list);
         }
         Prompt::Page(page) => {
             view.range.clear();
@@ -366,6 +388,16 @@ fn over(state: &State, view: &mut View) {
             view.question = format!("Page {} of {}", page.page + 1, page.pages.len());
             view.press = "ENTER next page   - close".into();
             view.say = "next, back, disregard".into();
+            if page.title == utter::HELP {
+                view.full = true;
+                view.title = if page.page == 0 { "Keys" } else { "Words" }.into();
+                view.press = if page.page == 0 {
+                    "ENTER words   - close"
+                } else {
+                    "ENTER close"
+                }
+                .into();
+            }
         }
         Prompt::Menu => {
             view.range.clear();
@@ -439,6 +471,19 @@ fn over(state: &State, view: &mut View) {
     }
 }
 
+/// What may be said at a list; reasons by their own words.
+fn list_words(list: &super::prompt::List) -> String {
+    use super::prompt::Choice;
+    let says = match (list.items.len(), list.items.first()) {
+        (0, _) => "back",
+        (1, _) => "affirm, negative",
+        (_, Some((_, Choice::Keep(..)))) => "measured twice, fault found, first, ...",
+        (_, Some((_, Choice::Skip(_)))) => "no access, no instrument, first, ...",
+        _ => "first, second, next, back",
+    };
+    says.into()
+}
+
 fn verdict(candidate: &Candidate) -> &'static str {
     match candidate.entry {
         // A tick has no range; its words say how it is.
@@ -449,7 +494,7 @@ fn verdict(candidate: &Candidate) -> &'static str {
 
 fn confirm_view(candidate: &Candidate, view: &mut View) {
     let off = candidate.assessment.verdict.questioned();
-    view.alarm = off;
+    view.alarm = candidate.assessment.questioned();
     view.body = candidate
         .heard
         .iter()

@@ -11,7 +11,7 @@ use std::{
 use crate::domain::{
     place::{BoardId, CircuitNo, PointNo},
     plan::Job,
-    record::{Record, Work},
+    record::{EntryNo, Record, Work},
     standing::Standing,
     test::{Stage, Target},
 };
@@ -136,6 +136,9 @@ pub struct State {
     pub(super) charged: BTreeSet<(BoardId, CircuitNo)>,
     /// Boards whose isolation must be proved again (see [`Setup::away`]).
     pub(super) lapsed: BTreeSet<BoardId>,
+    /// Acknowledgements before this entry do not count for them; the session's beginning when
+    /// nothing else.
+    pub(super) lapsed_at: Option<EntryNo>,
     /// Tests whose prompt stood on the screen, for "back".
     pub(super) trail: Vec<Target>,
     /// Half-typed input, each with the test it was typed for.
@@ -143,6 +146,8 @@ pub struct State {
     /// Records to keep, the first of them with the journal when `awaiting`.
     pub(super) pending: VecDeque<Pending>,
     pub(super) awaiting: bool,
+    /// Records the journal could not keep and that were let go of, and not made good since.
+    pub(super) unkept: Vec<Record>,
     /// The step of the work changes once the last pending record is kept.
     pub(super) move_on: bool,
     /// A work came out: stages may close elsewhere than where the tester is.
@@ -150,6 +155,10 @@ pub struct State {
     /// Events that came while waiting for the journal.
     pub(super) held: VecDeque<Event>,
     pub(super) ear: EarState,
+    /// The tool itself sounds: nothing else is heard.
+    pub(super) deaf: bool,
+    /// Milliseconds of sound lost in this session, and how many of them the log knows of.
+    pub(super) lost_ms: (u64, u64),
     pub(super) level: u8,
     pub(super) now: u64,
     /// What happened last, for the screen: "kept as entry 12".
@@ -192,14 +201,18 @@ pub fn begin(setup: Setup, standing: Standing) -> (State, Vec<Effect>) {
         left_in: BTreeSet::new(),
         charged: BTreeSet::new(),
         lapsed,
+        lapsed_at: None,
         trail: Vec::new(),
         drafts: BTreeMap::new(),
         pending: VecDeque::new(),
         awaiting: false,
+        unkept: Vec::new(),
         move_on: false,
         look_everywhere: false,
         held: VecDeque::new(),
         ear,
+        deaf: false,
+        lost_ms: (0, 0),
         level: 0,
         now: 0,
         notice: String::new(),
@@ -256,6 +269,12 @@ impl State {
             Event::Redraw => out.push(Effect::Show),
             other if self.awaiting => self.held.push_back(other),
             Event::Speaking(on) => self.speaking(on, out),
+            Event::Deaf(on) => {
+                self.deaf = on;
+                out.push(Effect::Show);
+            }
+            Event::SoundLost(ms) => self.sound_lost(ms, out),
+            Event::NoSpeech => self.no_speech(out),
             Event::DeviceLost => {
                 if !matches!(self.ear, EarState::None | EarState::Lost) {
                     self.ear = EarState::Lost;
@@ -271,6 +290,7 @@ impl State {
                 }
             }
             Event::ClockChanged(how) => self.keep_incident(&format!("clock changed: {how}"), out),
+            Event::LeftLong => self.left_long(out),
             Event::Stop(cause) => self.stop(cause, out),
             Event::Key(key) => {
                 // What was said about the last key or word does not stand beside the next.
@@ -318,6 +338,12 @@ impl State {
         self.ear
     }
 
+    /// Records that were to be kept, could not be, and were not made good since.
+    #[must_use]
+    pub fn unkept(&self) -> &[Record] {
+        &self.unkept
+    }
+
     /// A record waits for the journal's answer.
     #[must_use]
     pub fn awaiting(&self) -> bool {
@@ -344,6 +370,52 @@ impl State {
         };
         if next != self.ear {
             self.ear = next;
+            out.push(Effect::Show);
+        }
+    }
+
+    /// The handheld slept, or the clock says so: what was locked off may no longer be. What was not
+    /// affirmed is asked again.
+    fn left_long(&mut self, out: &mut Vec<Effect>) {
+        self.lapsed = self.job().boards.iter().map(|b| b.id.clone()).collect();
+        self.lapsed_at = Some(self.standing.last + 1);
+        if self.stack.iter().any(|p| matches!(p, Prompt::Standby)) {
+            out.push(Effect::Pause(false));
+        }
+        self.note("Left for long: isolation is proved again.");
+        // A record that waits after trouble stays before the tester.
+        if self.pending.is_empty() {
+            self.advance(out);
+        }
+    }
+
+    /// Sound was lost: one line, and in the log once it is half a second and at each doubling.
+    fn sound_lost(&mut self, ms: u64, out: &mut Vec<Effect>) {
+        self.lost_ms.0 = self.lost_ms.0.saturating_add(ms);
+        let (all, told) = self.lost_ms;
+        let seconds = |ms: u64| format!("{}.{} s", ms / 1000, ms % 1000 / 100);
+        self.refuse(
+            format!(
+                "{} of sound lost ({} in all): say it again.",
+                seconds(ms),
+                seconds(all)
+            ),
+            out,
+        );
+        if all >= 500 && all >= told.saturating_mul(2) {
+            self.lost_ms.1 = all;
+            let what = format!("sound lost, machine too slow: {} in all", seconds(all));
+            self.keep_incident(&what, out);
+        }
+    }
+
+    /// What began like speech was none. Told where it was asked for by a key; with the microphone
+    /// open only where the line is free, for every knock begins like speech.
+    fn no_speech(&mut self, out: &mut Vec<Effect>) {
+        if self.setup.settings.hold_to_talk {
+            self.refuse("No words heard. Press and say it again.", out);
+        } else if self.notice.is_empty() && !matches!(self.top(), Prompt::Standby) {
+            self.note("A sound too short to be words.");
             out.push(Effect::Show);
         }
     }

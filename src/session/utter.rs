@@ -34,32 +34,41 @@ pub(super) const AGAIN: &str = "Not understood.";
 /// Said when digits are taken one at a time.
 pub(super) const BY_DIGIT: &str = "One digit at a time, then done.";
 
-/// The keys, for the help page; six lines a page, 38 columns at most.
-pub(super) const HELP: [&str; 24] = [
-    "ENTER yes, done   - no, back off",
-    "* menu   / say again   + next",
-    "Figure: digits and point, ENTER",
-    "  + first: greater than  >299",
-    "  - first: less than     <0.01",
-    "  / first: open; // over-range",
-    "  - later: rubs out",
-    "At a read-back a digit starts anew.",
-    "* then 1 call a circuit (7  4.2  7+3)",
-    "* then 2 call a test",
-    "* then 3 what is open",
-    "* then 4 links and works in",
-    "* then 5 how to connect, why the range",
-    "* then 6 correct the last value",
-    "* then 7 leave this test out",
-    "* then 8 standby   * 9 end the session",
-    "* then + next   * - one step back",
-    "* then . note   * ENTER listen once",
-    "Say: affirm, negative, say again,",
-    "  correction, disregard, digit by digit",
-    "  circuit one two, board alpha, next,",
-    "  back, skip, list open, list links,",
-    "  why, standby, resume, stop, help",
-    "Letters do the same: y n o l w s b c t",
+/// Title of the help.
+pub(super) const HELP: &str = "Keys and words";
+
+/// The keys, all of them on one screen of 40 x 15.
+pub(super) const KEYS: [&str; 13] = [
+    "ENTER yes, done   - no, back, rub out",
+    "/ say again   + next   * menu, then:",
+    "  1 circuit 7, 4.2, 7+3 (point), /board",
+    "  2 call a test     3 what is open",
+    "  4 links, works in 5 how and why",
+    "  6 correct last    7 leave test out",
+    "  8 standby  9 end the session  0 help",
+    "  + next  - step back  . note",
+    "  ENTER or space: speak; again: end",
+    "Figure: digits and point, ENTER; first",
+    "  + over >299       - under <0.01",
+    "  / open circuit    // over-range",
+    "A digit at a read-back starts anew.",
+];
+
+/// The words, on the next.
+pub(super) const WORDS: [&str; 13] = [
+    "Say: a reading, affirm, negative, done,",
+    "  say again, correction (and the value),",
+    "  disregard, digit by digit, standby,",
+    "  resume, next, back, stop, help",
+    "Places: circuit one two, way four line",
+    "  two, board alpha, socket three,",
+    "  spur off three, your own names",
+    "Also: what is open, list links, why,",
+    "  link in, link out, skip, no access,",
+    "  same as last point, take a note",
+    "Out of range: keep as found, measure",
+    "  again; then the reason in its words",
+    "Letters: y n o l w s b x c t r d e p q m",
 ];
 
 /// The menu, for the screen.
@@ -354,6 +363,13 @@ pub(super) fn control_text(control: &Control) -> String {
         }
         Control::Correction(None) => "correction".into(),
         Control::Digits(digits) => digits.clone(),
+        Control::SameAs(point) => format!("same as point {point}"),
+        Control::LeaveOut(n) => super::lists::SKIP
+            .get(usize::from(*n).saturating_sub(1))
+            .map_or("leave out".into(), |r| (*r).into()),
+        Control::KeepFor(n) => super::lists::KEEP
+            .get(usize::from(*n).saturating_sub(1))
+            .map_or("keep as found".into(), |(r, _)| (*r).into()),
         plain => plain.word().replace('-', " "),
     }
 }

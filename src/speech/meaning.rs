@@ -5,7 +5,7 @@
 //! It leaves out how the words were found (see `phrase`) and what the session does with them.
 
 use crate::domain::{
-    place::Place,
+    place::{Place, PointNo},
     reading::{Reading, Unit},
     test::{Stage, TestKind},
 };
@@ -68,6 +68,18 @@ pub enum Control {
     NotConfirmed,
     /// Begin a free note (typed later at the van; the clip is kept).
     Note,
+    /// "Roger": received, which is not yes.
+    Received,
+    /// "Same", "ditto", without saying as what.
+    Same,
+    /// The same value as the last one of this test on this circuit.
+    SameAsLast,
+    /// The same value as at that point of this circuit.
+    SameAs(PointNo),
+    /// Leave this test out for the n-th of the reasons, from 1, said in words.
+    LeaveOut(u8),
+    /// Keep as found for the n-th of the reasons, from 1, said in words.
+    KeepFor(u8),
 }
 
 impl Reply {
@@ -87,7 +99,7 @@ impl Reply {
 
 impl Control {
     /// The commands that have no parts.
-    pub const PLAIN: [Control; 18] = [
+    pub const PLAIN: [Control; 21] = [
         Control::SayAgain,
         Control::Disregard,
         Control::Standby,
@@ -106,6 +118,9 @@ impl Control {
         Control::Confirmed,
         Control::NotConfirmed,
         Control::Note,
+        Control::Received,
+        Control::Same,
+        Control::SameAsLast,
     ];
 
     /// The command as a word in JSON: `say-again`, `link-out`, ...
@@ -135,6 +150,12 @@ impl Control {
             Control::Confirmed => "confirmed",
             Control::NotConfirmed => "not-confirmed",
             Control::Note => "note",
+            Control::Received => "received",
+            Control::Same => "same",
+            Control::SameAsLast => "same-as-last",
+            Control::SameAs(_) => "same-as",
+            Control::LeaveOut(_) => "leave-out",
+            Control::KeepFor(_) => "keep-for",
         }
     }
 }

@@ -90,6 +90,7 @@ pub fn place(place: &Place) -> String {
     if let Some(point) = place.point {
         let number = characters(&point.to_string());
         parts.push(match (parts.is_empty(), place.circuit) {
+            _ if place.spur => format!("spur off {number}"),
             (true, _) => format!("at point {number}"),
             (false, None) => format!("socket {number}"),
             (false, Some(_)) => format!("point {number}"),

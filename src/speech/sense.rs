@@ -22,6 +22,8 @@ struct Draft {
     bound: Option<Bound>,
     unit: Option<Unit>,
     own: Option<String>,
+    spur: bool,
+    same: bool,
 }
 
 /// The meaning of one way through a grammar.
@@ -46,6 +48,8 @@ pub fn meaning<'a>(tags: impl IntoIterator<Item = &'a Tag>) -> Result<Meaning, S
             Tag::Reply(reply) => whole = Some(Meaning::Reply(*reply)),
             Tag::Control(control) => whole = Some(Meaning::Control(control.clone())),
             Tag::Correction => correction = true,
+            Tag::Spur => draft.spur = true,
+            Tag::Same => draft.same = true,
         }
     }
     let inner = match whole {
@@ -75,6 +79,9 @@ impl Draft {
             return Ok(Some(Meaning::Control(Control::Digits(digits.into()))));
         }
         let place = self.place()?;
+        if let (true, Some(point)) = (self.same, place.point) {
+            return Ok(Some(Meaning::Control(Control::SameAs(point))));
+        }
         if place != Place::default() {
             return Ok(Some(Meaning::Place(place)));
         }
@@ -106,6 +113,7 @@ impl Draft {
                 .parse()
                 .map_err(|_| format!("point {point} cannot be"))?;
             place.point = Some(PointNo(number));
+            place.spur = self.spur;
         }
         Ok(place)
     }

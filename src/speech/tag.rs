@@ -17,6 +17,9 @@
 //! | `reply:affirm` `control:back` | a reply or command without parts |
 //! | `test:r1r2` `stage:insulation` | takes up a test or a stage |
 //! | `correction` | what follows replaces the last value |
+//! | `spur` | the point is the one on a spur off the point named |
+//! | `same` | the same value as at the point named |
+//! | `leave-out:2` `keep-for:4` | the n-th of the session's reasons, said in words |
 
 use crate::domain::{
     reading::Unit,
@@ -50,6 +53,10 @@ pub enum Tag {
     Control(Control),
     /// What follows replaces the last value.
     Correction,
+    /// The point is the one on a spur off the point named.
+    Spur,
+    /// The same value as at the point named.
+    Same,
 }
 
 /// Where text tags go.
@@ -86,6 +93,8 @@ impl Tag {
                     .into_iter()
                     .find(|stage| stage_word(*stage) == name)
                     .map(|stage| Tag::Control(Control::Stage(stage))),
+                "leave-out" => ordinal(name).map(|n| Tag::Control(Control::LeaveOut(n))),
+                "keep-for" => ordinal(name).map(|n| Tag::Control(Control::KeepFor(n))),
                 _ => None,
             };
         }
@@ -95,6 +104,8 @@ impl Tag {
             "open" => Tag::Open,
             "over-range" => Tag::OverRange,
             "correction" => Tag::Correction,
+            "spur" => Tag::Spur,
+            "same" => Tag::Same,
             "board" => Tag::Slot(Slot::Board),
             "circuit" => Tag::Slot(Slot::Circuit),
             "line" => Tag::Slot(Slot::Line),
@@ -131,6 +142,11 @@ pub fn stage_word(stage: Stage) -> &'static str {
         Stage::Energise => "energise",
         Stage::Live => "live",
     }
+}
+
+/// One figure from 1.
+fn ordinal(name: &str) -> Option<u8> {
+    name.parse().ok().filter(|n| (1..=9).contains(n))
 }
 
 fn reply(name: &str) -> Option<Reply> {

@@ -16,7 +16,8 @@ use std::{
 
 use super::{
     front::{Front, FrontEvent, Utterance, activity::Settings},
-    hearing::Hearing,
+    hearing::{Fit, Hearing},
+    recogniser::RecogniserError,
     source::{Piece, Source},
 };
 use crate::speech::{Context, Heard, Meaning};
@@ -32,6 +33,10 @@ pub enum VoiceEvent {
     Heard(Heard, Vec<i16>),
     /// Milliseconds of sound that were lost because the machine was too slow.
     Dropped(u64),
+    /// What began like speech was too short to be any, or silence while the key was down.
+    NoSpeech,
+    /// Nothing is listened to, because the tool itself sounds; or listening goes on.
+    Deaf(bool),
     /// The source is gone; how, in words. It is looked for again.
     Lost(String),
     /// The source is there (again); its name.
@@ -85,8 +90,10 @@ impl Ear {
             orders: taken,
             tell,
             hold: false,
+            asked: false,
             paused: false,
             muted_until: None,
+            guess: None,
         };
         let thread = thread::Builder::new()
             .name("ear".into())
@@ -154,8 +161,35 @@ struct Listener {
     orders: Receiver<Order>,
     tell: Sender<VoiceEvent>,
     hold: bool,
+    /// One utterance was asked for by key and is not over.
+    asked: bool,
     paused: bool,
     muted_until: Option<Instant>,
+    guess: Option<Guess>,
+}
+
+/// An utterance that is being recognised while the pause after it is waited for.
+struct Guess {
+    context: Context,
+    samples: Vec<i16>,
+    answer: Receiver<Result<Fit, RecogniserError>>,
+}
+
+impl Guess {
+    /// How the utterance was explained, when it is the one that was guessed. How long it was loud,
+    /// and by a key, is known at its end only.
+    fn fit(self, context: Context, utterance: &Utterance) -> Option<Fit> {
+        if self.context != context || self.samples != utterance.samples {
+            return None;
+        }
+        let mut fit = self.answer.recv().ok()?.ok()?;
+        // Without a measure of any sounds its length is taken from the utterance, too.
+        if fit.anything.words.is_empty() && fit.loud != utterance.loud {
+            return None;
+        }
+        (fit.loud, fit.held) = (utterance.loud, utterance.held);
+        Some(fit)
+    }
 }
 
 /// Why a loop ended.
@@ -211,6 +245,7 @@ impl Listener {
             return End::Quit;
         }
         let mut speaking = false;
+        let mut deaf = false;
         loop {
             let mut events = match self.take_orders(Some(&mut front)) {
                 Ok(events) => events,
@@ -218,8 +253,14 @@ impl Listener {
             };
             let piece = source.read();
             let over = piece == Piece::End;
+            if self.deaf() != deaf {
+                deaf = !deaf;
+                if self.tell.send(VoiceEvent::Deaf(deaf)).is_err() {
+                    return End::Quit;
+                }
+            }
             match piece {
-                Piece::Sound(sound) if self.deaf() => {
+                Piece::Sound(sound) if deaf => {
                     front.forget();
                     drop(sound);
                 }
@@ -255,7 +296,14 @@ impl Listener {
 
     /// Whether what comes in now is not to be listened to.
     fn deaf(&mut self) -> bool {
-        if self.mouth.load(Ordering::Relaxed) {
+        let sounding = self.mouth.load(Ordering::Relaxed);
+        if self.asked {
+            // By key: the tool fell silent for it, and only the short tone that says so is not
+            // listened to. People press and speak at once.
+            self.muted_until = None;
+            return sounding || self.paused;
+        }
+        if sounding {
             self.muted_until = Some(Instant::now() + ECHO);
         }
         let muted = self.muted_until.is_some_and(|until| Instant::now() < until);
@@ -280,7 +328,10 @@ impl Listener {
                     // Opened now, so that the utterance need not wait; a failure shows then.
                     let _later = self.hearing.prepare(context);
                 }
-                Order::HoldToTalk(on) => self.hold = on,
+                Order::HoldToTalk(on) => {
+                    self.hold = on;
+                    self.asked = false;
+                }
                 Order::Pause(pause) => self.paused = pause,
                 Order::Press | Order::Release | Order::Once => {}
             }
@@ -291,27 +342,67 @@ impl Listener {
                 Order::HoldToTalk(on) => front.hold_to_talk(on),
                 Order::Press => front.press(&mut events),
                 Order::Release => front.release(&mut events),
-                Order::Once => front.once(),
+                // A second press ends what the first began.
+                Order::Once if self.asked && front.speaking() => front.enough(&mut events),
+                Order::Once => {
+                    front.once();
+                    self.asked = self.hold;
+                }
                 Order::Pause(_) => front.forget(),
                 Order::Context(_) => {}
             }
         }
     }
 
-    fn tell(&self, event: FrontEvent) -> Result<(), ()> {
+    /// Recognises ahead, on a thread of its own: the same sound in the same context gives the same
+    /// answer, so nothing but time is gained or lost. One at a time.
+    fn begin_guess(&mut self, utterance: Utterance) {
+        let running = self
+            .guess
+            .as_ref()
+            .is_some_and(|g| matches!(g.answer.try_recv(), Err(TryRecvError::Empty)));
+        if running {
+            return;
+        }
+        let (send, answer) = channel();
+        let (hearing, context) = (Arc::clone(&self.hearing), self.context);
+        let samples = utterance.samples.clone();
+        let begun = thread::Builder::new().name("guess".into()).spawn(move || {
+            // Nobody waits for it any more when speech went on.
+            let _unwanted = send.send(hearing.fit(context, &utterance));
+        });
+        self.guess = begun.is_ok().then_some(Guess {
+            context,
+            samples,
+            answer,
+        });
+    }
+
+    fn tell(&mut self, event: FrontEvent) -> Result<(), ()> {
         let told = match event {
             FrontEvent::Level(level) => VoiceEvent::Level(level),
-            FrontEvent::Began | FrontEvent::Dropped => return Ok(()),
+            FrontEvent::Likely(utterance) => {
+                self.begin_guess(utterance);
+                return Ok(());
+            }
+            // Told by `Speaking`.
+            FrontEvent::Began => return Ok(()),
+            FrontEvent::Dropped => VoiceEvent::NoSpeech,
             FrontEvent::Utterance(utterance) => {
-                // Decoding takes a moment: whoever watches should know that speech was noticed.
-                let Utterance { clip, .. } = &utterance;
-                let heard = self.hearing.hear(self.context, &utterance);
+                self.asked = false;
+                let guessed = self.guess.take();
+                let guessed = guessed.and_then(|g| g.fit(self.context, &utterance));
+                let heard = match guessed {
+                    Some(fit) => Ok(self.hearing.meaning(self.context, &fit)),
+                    None => self.hearing.hear(self.context, &utterance),
+                };
+                // A failure of the recogniser is told like a mishearing.
                 let heard = heard.unwrap_or_else(|error| Heard {
                     hypotheses: Vec::new(),
                     meaning: Meaning::Nothing(error.to_string()),
                     clip: None,
                 });
-                VoiceEvent::Heard(heard, clip.clone())
+                VoiceEvent::Heard(heard, utterance.clip)
             }
         };
         self.tell.send(told).map_err(drop)

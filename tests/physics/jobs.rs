@@ -39,6 +39,7 @@ pub fn circuit(way: u16, kind: CircuitKind, pair: (f64, f64), m: f64, points: us
             cpc: Some(copper(pair.1)),
             insulation: Insulation::Thermoplastic70,
         },
+        without_neutral: false,
         length: Length {
             m,
             basis: LengthBasis::Measured,

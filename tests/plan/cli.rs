@@ -103,7 +103,7 @@ fn show_one_circuit_with_its_tests_in_order() {
 }
 
 /// Answers that make a small job; one line each.
-const ANSWERS: &str = "SHED-2\nShed\n\n\nA. Tester\n12\n\n\n\n\n\nnone\n\ndone\n\nDB1\n\n\n1\nLamp\nfixed\n\n\n9\n\n\n\n\n\n\n\ndone\ndone\n";
+const ANSWERS: &str = "SHED-2\nShed\n\n\nA. Tester\n12\n\n\n\n\n\nnone\n\ndone\n\nDB1\n\n\n1\nLamp\nfixed\n\n\n9\n\n\n\n\n\n\n\n\ndone\ndone\n\n";
 
 #[test]
 fn new_works_line_by_line_on_a_pipe() {

@@ -1,7 +1,7 @@
 //! The interview as a function of its answers: whole interviews, steps back, refusals.
 
 use handsfull::{
-    domain::plan::{CircuitKind, Conductor, Earthing},
+    domain::plan::{CircuitKind, Conductor, Earthing, Material},
     plan::{
         self,
         interview::{Step, next, step},
@@ -34,7 +34,9 @@ const SMALL: &[&str] = &[
     "done", // bonds
     "installation tester",
     "0417",
-    "", // instrument
+    "",
+    "",
+    "2 + 3", // instrument
     "",
     "lean-to",
     "no", // board
@@ -50,6 +52,7 @@ const SMALL: &[&str] = &[
     "4",
     "3:5",
     "8, 20, 20, 40",
+    "",
     "", // circuit
     "2",
     "Light",
@@ -63,9 +66,11 @@ const SMALL: &[&str] = &[
     "lamp, porch",
     "",
     "",
-    "", //
+    "",
+    "6", //
     "done",
     "done",
+    "lean-to = DB1, yard lamp = db1/2",
 ];
 
 fn answers(list: &[&str]) -> Vec<String> {
@@ -133,23 +138,26 @@ fn an_answer_that_cannot_be_right_is_refused_with_the_reason() {
     check(8, "2", "1 or 3");
     check(12, "12 m", "without unit");
     check(15, "water\tand", "control characters");
-    check(23, "db-1!", "capital letters and digits");
-    check(26, "0", "1 to 199");
-    check(28, "rign", "did you mean `ring`?");
-    check(29, "3", "no size of IEC 60228");
-    check(30, "none", "only SELV and PELV");
-    check(33, "E32", "the types are");
-    check(35, "0", "1 to 200 points");
-    check(36, "9:5", "numbered 1 to 4");
-    check(36, "3-5", "with a colon");
-    check(37, "8, 20", "2 places for 4 points");
-    check(37, "8, 20, 20, 400", "between 0 and 48");
-    check(39, "1", "a circuit 1 already");
+    check(23, "3 %", "with a plus between");
+    check(25, "db-1!", "capital letters and digits");
+    check(28, "0", "1 to 199");
+    check(30, "rign", "did you mean `ring`?");
+    check(31, "3", "no size of IEC 60228");
+    check(32, "none", "only SELV and PELV");
+    check(35, "E32", "the types are");
+    check(37, "0", "1 to 200 points");
+    check(38, "9:5", "numbered 1 to 4");
+    check(38, "3-5", "with a colon");
+    check(39, "8, 20", "2 places for 4 points");
+    check(39, "8, 20, 20, 400", "between 0 and 48");
+    check(31, "2.5 al", "no size of IEC 60228 for aluminium");
+    check(41, "much", "is not a number");
+    check(42, "1", "a circuit 1 already");
 }
 
 #[test]
 fn armour_is_given_by_its_resistance_and_extra_low_voltage_needs_no_earth() {
-    let mut list = answers(&SMALL[..26]);
+    let mut list = answers(&SMALL[..28]);
     list.extend(answers(&[
         "7",
         "",
@@ -163,7 +171,8 @@ fn armour_is_given_by_its_resistance_and_extra_low_voltage_needs_no_earth() {
         "2",
         "",
         "",
-        "yes", // armoured radial
+        "yes",
+        "", // armoured radial
         "8",
         "",
         "selv",
@@ -175,9 +184,11 @@ fn armour_is_given_by_its_resistance_and_extra_low_voltage_needs_no_earth() {
         "",
         "3",
         "",
+        "",
         "", // SELV
         "done",
         "done",
+        "",
     ]));
     let Step::Done(job) = next(&list) else {
         panic!("{:?}", next(&list));
@@ -193,6 +204,86 @@ fn armour_is_given_by_its_resistance_and_extra_low_voltage_needs_no_earth() {
     );
     assert!(armoured.long_lead);
     assert_eq!(selv.cable.cpc, None);
+}
+
+#[test]
+fn a_motor_without_neutral_an_aluminium_feeder_and_a_delayed_rcd_can_be_written() {
+    let mut list = answers(&SMALL[..8]);
+    list.push("3".into());
+    list.extend(answers(&SMALL[9..28]));
+    list.extend(answers(&[
+        "7",
+        "Saw",
+        "fixed",
+        "3",
+        "no", // a motor: L1, L2, L3 and earth
+        "4",
+        "",
+        "22",
+        "",
+        "C16",
+        "",
+        "",
+        "",
+        "no",
+        "no",
+        "12.5", //
+        "8",
+        "Sub-main",
+        "distribution",
+        "3",
+        "", // aluminium, with neutral
+        "25 al",
+        "",
+        "40",
+        "",
+        "C63",
+        "100 s",
+        "",
+        "",
+        "no",
+        "no",
+        "", //
+        "done",
+        "done",
+        "saw bench = DB1/7",
+    ]));
+    let Step::Done(job) = next(&list) else {
+        panic!("{:?}", next(&list));
+    };
+    let [motor, feeder] = job.boards[0].circuits.as_slice() else {
+        panic!("two circuits");
+    };
+    assert!(motor.without_neutral && !feeder.without_neutral);
+    assert_eq!(motor.design_a, Some(12.5));
+    let rcd = feeder.device.rcd.expect("an RCD");
+    assert!(rcd.delayed && rcd.rated_ma == 100.0);
+    assert!(matches!(
+        (feeder.cable.line, feeder.cable.cpc),
+        (
+            Conductor::Size {
+                mm2: 25.0,
+                material: Material::Aluminium,
+                ..
+            },
+            Some(Conductor::Size {
+                mm2: 25.0,
+                material: Material::Aluminium,
+                ..
+            })
+        )
+    ));
+    assert_eq!(job.place_names[0].name, "saw bench");
+    let text = to_toml(&job);
+    assert_eq!(plan::parse(&text, "x").as_ref(), Ok(&*job), "{text}");
+    // No test asks for a conductor that is not there.
+    let pairs = handsfull::domain::sequence::insulation_pairs(&job, motor);
+    assert_eq!(pairs.len(), 4, "{pairs:?}");
+    assert!(pairs.iter().all(|pair| !pair.to_neutral()));
+    assert_eq!(
+        handsfull::domain::sequence::insulation_pairs(&job, feeder).len(),
+        7
+    );
 }
 
 proptest! {

@@ -171,6 +171,7 @@ fn circuit(three_phase_supply: bool) -> impl Strategy<Value = Circuit> {
                     name: name.clone(),
                     kind,
                     three_phase: three && three_phase_supply && line.is_none(),
+                    without_neutral: three && three_phase_supply && line.is_none() && long_lead,
                     cable,
                     length,
                     device: Device {

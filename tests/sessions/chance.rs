@@ -78,6 +78,7 @@ fn place() -> impl Strategy<Value = Meaning> {
             board,
             circuit: circuit.and_then(|n| CircuitNo::new(n, None).ok()),
             point: point.map(PointNo),
+            spur: point == Some(3),
             name,
         })
     })
@@ -105,6 +106,9 @@ fn meaning() -> impl Strategy<Value = Meaning> {
         Just(Control::Stage(Stage::Insulation)),
         Just(Control::Stage(Stage::Live)),
         (0..9_u8).prop_map(Control::Reason),
+        (0..9_u8).prop_map(Control::LeaveOut),
+        (0..9_u8).prop_map(Control::KeepFor),
+        (0..9_u16).prop_map(|n| Control::SameAs(PointNo(n))),
     ];
     prop_oneof![
         4 => reading(),
@@ -131,6 +135,10 @@ fn deed() -> impl Strategy<Value = Deed> {
         any::<bool>().prop_map(Event::Speaking),
         Just(Event::Redraw),
         Just(Event::ClockChanged("back by an hour".into())),
+        Just(Event::LeftLong),
+        any::<bool>().prop_map(Event::Deaf),
+        Just(Event::SoundLost(400)),
+        Just(Event::NoSpeech),
         Just(Event::Kept(7)),
         Just(Event::NotKept("stray".into())),
     ];

@@ -74,6 +74,8 @@ struct Tally {
 struct Tester {
     dice: Dice,
     ear: Ear,
+    /// The test whose reading was asked for last.
+    at: Option<Target>,
     /// What the instrument shows, by target.
     truth: BTreeMap<Target, Entry>,
     tally: Tally,
@@ -268,6 +270,7 @@ impl Tester {
                     let _ = target;
                     return self.say(bench, Meaning::Control(Control::Correction(None)));
                 }
+                self.at = Some(ask.target.clone());
                 let truth = self.truth(bench, &ask.target);
                 match &truth {
                     Entry::Tick(true) => self.say(bench, Meaning::Control(Control::Confirmed)),
@@ -316,11 +319,14 @@ impl Tester {
                 self.say(bench, Meaning::Reply(reply));
             }
             Prompt::List(list) => {
+                // The list of reasons names the value that would be kept: it is looked at.
+                let shown = self.at.as_ref().and_then(|at| self.truth.get(at));
+                let right = shown.is_none_or(|truth| list.title.contains(&truth.to_string()));
                 let mut pick = None;
                 for (n, (_, choice)) in list.shown() {
                     let wanted = match choice {
                         Choice::Candidate(c) => self.reads(&c.target, &c.entry),
-                        Choice::Keep(_, fault) => !*fault,
+                        Choice::Keep(_, fault) => !*fault && right,
                         _ => false,
                     };
                     if wanted && pick.is_none() {
@@ -339,6 +345,10 @@ impl Tester {
             Prompt::StopAsk => self.say(bench, Meaning::Reply(Reply::Negative)),
             Prompt::Page(_) | Prompt::Menu | Prompt::Call(_) => {
                 self.say(bench, Meaning::Control(Control::Disregard));
+            }
+            // The last value kept stands on this screen, too.
+            Prompt::Finish if wrong.is_some() => {
+                self.say(bench, Meaning::Control(Control::Correction(None)));
             }
             Prompt::Finish => self.press(bench, Key::Enter),
             Prompt::Gate(_)
@@ -445,6 +455,7 @@ fn simulate(ear: Ear, entries: usize, seed: u64) -> Tally {
     let mut tester = Tester {
         dice: Dice(seed),
         ear,
+        at: None,
         truth: BTreeMap::new(),
         tally: Tally::default(),
     };

@@ -70,3 +70,43 @@ fn what_is_missing_or_wrong_is_one_clear_line() {
     let text = String::from_utf8_lossy(&done.get_output().stderr).into_owned();
     assert!(text.contains("loudness"), "{text}");
 }
+
+/// A log that cannot grow any further stands in for a full disk: `/dev/full` cannot be a log, a
+/// file size limit can.
+#[cfg(target_os = "linux")]
+#[test]
+fn what_a_full_disk_kept_out_of_the_log_is_told_and_is_a_failure() {
+    let folder = job_folder();
+    field(folder.path(), TO_READING).success();
+    let size = log(folder.path()).len();
+    let program = assert_cmd::cargo::cargo_bin("handsfull");
+    // In blocks of 512 bytes; room for the beginning of the session and no more.
+    let script = format!(
+        "trap '' XFSZ; ulimit -f {}; exec \"$0\" field --keypad-only \"$1\"",
+        (size + 300).div_ceil(512)
+    );
+    let mut lines = String::new();
+    for _ in 0..12 {
+        lines.push_str("0.02\n\n-\n");
+    }
+    let done = Command::new("sh")
+        .args(["-c", &script])
+        .arg(&program)
+        .arg(folder.path().join("shed.toml"))
+        .env("HOME", folder.path())
+        .env_remove("XDG_CONFIG_HOME")
+        .write_stdin(lines)
+        .assert()
+        .code(5);
+    let out = done.get_output();
+    let told = String::from_utf8_lossy(&out.stderr).into_owned();
+    assert!(told.contains("NOT KEPT:"), "{told}");
+    assert!(told.contains("could not be written to the log"), "{told}");
+    // What the log holds is whole.
+    Command::cargo_bin("handsfull")
+        .expect("the program")
+        .arg("verify")
+        .arg(folder.path().join("shed.toml"))
+        .assert()
+        .success();
+}

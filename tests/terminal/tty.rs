@@ -155,6 +155,43 @@ impl Tty {
         assert!(done.success());
     }
 
+    /// A session whose controlling terminal is another one: a hang-up of this one sends it no
+    /// signal, only its reader can notice.
+    pub fn without_signal(folder: &Path) -> Orphan {
+        let pair = native_pty_system()
+            .openpty(PtySize {
+                rows: 15,
+                cols: 40,
+                pixel_width: 0,
+                pixel_height: 0,
+            })
+            .expect("a terminal");
+        let name = pair.master.tty_name().expect("a terminal has a name");
+        let slave = || {
+            let opened = std::fs::OpenOptions::new()
+                .read(true)
+                .write(true)
+                .open(&name);
+            std::process::Stdio::from(opened.expect("the terminal opens"))
+        };
+        let child = std::process::Command::new(env!("CARGO_BIN_EXE_handsfull"))
+            .args(["field", "--keypad-only"])
+            .arg(folder.join("shed.toml"))
+            .env_clear()
+            .env("TERM", "xterm-256color")
+            .env("HOME", folder)
+            .stdin(slave())
+            .stdout(slave())
+            .stderr(slave())
+            .spawn()
+            .expect("the program starts");
+        Orphan {
+            child,
+            _slave: pair.slave,
+            master: Some(pair.master),
+        }
+    }
+
     /// Waits for the end; gives the exit code.
     pub fn end(mut self) -> u32 {
         let began = Instant::now();
@@ -191,4 +228,58 @@ impl Tty {
         }
         panic!("no `{text}`:\n{}", self.screen());
     }
+}
+
+/// A session at a terminal that is about to go away.
+pub struct Orphan {
+    child: std::process::Child,
+    _slave: Box<dyn portable_pty::SlavePty + Send>,
+    master: Option<Box<dyn MasterPty + Send>>,
+}
+
+impl Orphan {
+    /// Reads until the terminal was sent a text; no copy of its other end stays behind.
+    pub fn wait_for(&self, text: &str) {
+        use std::os::fd::BorrowedFd;
+        let master = self.master.as_ref().expect("not hung up yet");
+        let raw = master.as_raw_fd().expect("a file");
+        // SAFETY: the master lives until `hang_up`, which takes the whole session.
+        #[allow(unsafe_code)]
+        let fd = unsafe { BorrowedFd::borrow_raw(raw) };
+        let (mut seen, mut buffer) = (Vec::new(), [0; 4096]);
+        let began = Instant::now();
+        while !String::from_utf8_lossy(&seen).contains(text) {
+            assert!(began.elapsed() < PATIENCE, "no `{text}`");
+            let n = rustix::io::read(fd, &mut buffer).expect("the terminal can be read");
+            seen.extend_from_slice(&buffer[..n]);
+        }
+    }
+
+    /// The terminal goes away; gives the exit code and the processor time used since, in ticks of
+    /// a hundredth of a second.
+    pub fn hang_up(mut self) -> (Option<i32>, u64) {
+        let pid = self.child.id();
+        let before = ticks(pid).unwrap_or(0);
+        self.master = None;
+        let began = Instant::now();
+        let mut used = 0;
+        loop {
+            used = ticks(pid).map_or(used, |now| now.saturating_sub(before).max(used));
+            if let Some(status) = self.child.try_wait().expect("a child") {
+                return (status.code(), used);
+            }
+            if began.elapsed() > PATIENCE {
+                let _ = self.child.kill();
+                panic!("it goes on without a terminal, {used} ticks of the processor later");
+            }
+            thread::sleep(Duration::from_millis(10));
+        }
+    }
+}
+
+/// User and system time of a process.
+fn ticks(pid: u32) -> Option<u64> {
+    let stat = std::fs::read_to_string(format!("/proc/{pid}/stat")).ok()?;
+    let mut fields = stat.rsplit_once(')')?.1.split_whitespace().skip(11);
+    Some(fields.next()?.parse::<u64>().ok()? + fields.next()?.parse::<u64>().ok()?)
 }

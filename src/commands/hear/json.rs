@@ -108,6 +108,8 @@ fn describe(object: &mut Object, meaning: &Meaning) {
                 Control::Stage(stage) => put(object, "stage", stage_word(*stage)),
                 Control::Reason(n) => put(object, "value", n.to_string()),
                 Control::Digits(digits) => put(object, "value", digits.as_str()),
+                Control::SameAs(point) => put(object, "point", point.to_string()),
+                Control::LeaveOut(n) | Control::KeepFor(n) => put(object, "value", n.to_string()),
                 _ => {}
             }
         }

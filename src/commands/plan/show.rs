@@ -129,10 +129,10 @@ fn made_of(circuit: &Circuit) -> String {
     let mut text = format!(
         "{}{}, line {}",
         circuit.kind.word(),
-        if circuit.three_phase {
-            ", three phases"
-        } else {
-            ""
+        match (circuit.three_phase, circuit.without_neutral) {
+            (true, true) => ", three phases without neutral",
+            (true, false) => ", three phases",
+            _ => "",
         },
         conductor::words(cable.line),
     );

@@ -176,7 +176,20 @@ fn insulation(job: &Job, target: &Target, between: Between) -> Vec<String> {
     };
     let mut out = Vec::new();
     if between == Between::LivesEarth {
-        out.push("Lives joined, neutral with them.".into());
+        let without = target
+            .board
+            .as_ref()
+            .zip(target.circuit)
+            .and_then(|(board, no)| job.circuit(board, no))
+            .is_some_and(|circuit| circuit.without_neutral);
+        out.push(
+            if without {
+                "Lines joined; there is no neutral."
+            } else {
+                "Lives joined, neutral with them."
+            }
+            .into(),
+        );
     }
     out.push(format!("Probes on {one} and {other}."));
     volts(job, target, &mut out);

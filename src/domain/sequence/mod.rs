@@ -209,6 +209,9 @@ pub fn insulation_pairs(job: &Job, circuit: &Circuit) -> Vec<Between> {
         ]),
         (_, true) => pairs.extend([Between::LineEarth, Between::NeutralEarth]),
     }
+    if circuit.without_neutral {
+        pairs.retain(|pair| !pair.to_neutral());
+    }
     pairs
 }
 

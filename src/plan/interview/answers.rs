@@ -2,9 +2,16 @@
 //!
 //! Promises: an error is one clause that says what would be right. It leaves out the questions.
 
-use crate::domain::{plan::Material, words::Worded};
+use crate::domain::{
+    plan::{Conductor, Material, Rcd},
+    words::Worded,
+};
 
-use super::super::{cable::sizes, fields::either, suggest};
+use super::super::{
+    cable::{sizes, usual_class},
+    fields::either,
+    suggest,
+};
 
 /// The word for "nothing" and for the end of a list.
 pub(super) const NONE: &str = "none";
@@ -72,19 +79,62 @@ pub(super) fn number_or_none(low: f64, high: f64) -> impl Fn(&str) -> Result<Opt
     }
 }
 
-/// A cross-section of IEC 60228, copper.
-pub(super) fn size(answer: &str) -> Result<f64, String> {
-    let mm2 = number(0.0, 1000.0)(answer)?;
-    let held = sizes(Material::Copper);
+/// A conductor by its cross-section of IEC 60228: copper, or aluminium where `al` follows.
+pub(super) fn conductor(answer: &str) -> Result<Conductor, String> {
+    let lower = answer.to_lowercase();
+    let aluminium = lower
+        .strip_suffix("aluminium")
+        .or_else(|| lower.strip_suffix("al"));
+    let (figure, material) = match aluminium {
+        Some(figure) => (figure.trim_end(), Material::Aluminium),
+        None => (answer, Material::Copper),
+    };
+    let mm2 = number(0.0, 1000.0)(figure)?;
+    let held = sizes(material);
     if held.contains(&mm2) {
-        Ok(mm2)
-    } else {
-        let sizes: Vec<String> = held.iter().map(f64::to_string).collect();
-        Err(format!(
-            "{mm2} mm² is no size of IEC 60228; the sizes are {}",
-            sizes.join(", ")
-        ))
+        return Ok(Conductor::Size {
+            mm2,
+            material,
+            class: usual_class(mm2),
+        });
     }
+    let sizes: Vec<String> = held.iter().map(f64::to_string).collect();
+    Err(format!(
+        "{mm2} mm² is no size of IEC 60228{}; the sizes are {}",
+        if material == Material::Aluminium {
+            " for aluminium"
+        } else {
+            ""
+        },
+        sizes.join(", ")
+    ))
+}
+
+/// An RCD: its rated residual current in mA, with `s` or `delayed` where it is time-delayed.
+pub(super) fn rcd(answer: &str) -> Result<Option<Rcd>, String> {
+    if is_none(answer) {
+        return Ok(None);
+    }
+    let lower = answer.to_lowercase();
+    let late = lower
+        .strip_suffix("delayed")
+        .or_else(|| lower.strip_suffix('s'));
+    let rated_ma = number(1.0, 30_000.0)(late.unwrap_or(answer).trim_end())?;
+    Ok(Some(Rcd {
+        rated_ma,
+        delayed: late.is_some(),
+    }))
+}
+
+/// An instrument's accuracy: percent of the reading and digits of the last place, `3 + 2`.
+pub(super) fn accuracy(answer: &str) -> Result<(f64, f64), String> {
+    let right = || "write percent and digits with a plus between: 3 + 2".to_string();
+    let (percent, digits) = answer.split_once('+').ok_or_else(right)?;
+    let percent = percent.trim().trim_end_matches('%').trim_end();
+    Ok((
+        number(0.0, 50.0)(percent)?,
+        number(0.0, 100.0)(digits.trim())?,
+    ))
 }
 
 /// A word of a closed list.

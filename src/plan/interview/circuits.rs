@@ -4,7 +4,9 @@
 
 use crate::domain::{
     place::{BoardId, CircuitNo, PointNo},
-    plan::{Board, Cable, Circuit, CircuitKind, Conductor, Device, Insulation, Job, Point, Rcd},
+    plan::{
+        Board, Cable, Circuit, CircuitKind, Conductor, Device, Insulation, Job, Material, Point,
+    },
     sequence::extra_low,
     words::Worded,
 };
@@ -13,7 +15,7 @@ use super::{
     super::{board::feed_of, circuit::device_of},
     Pause, Script, answers,
     answers::{DONE, NONE},
-    questions::{copper, length, needed, with_default},
+    questions::{length, needed, with_default},
 };
 
 /// Asks for boards until there are no more.
@@ -213,12 +215,27 @@ fn circuit(s: &mut Script<'_>, job: &Job, id: &str, no: CircuitNo) -> Result<Cir
                 _ => Err("answer 1 or 3".into()),
             },
         )?;
+    let without_neutral = three_phase
+        && !s.ask(
+            with_default(
+                &key("neutral"),
+                "A neutral in the cable",
+                "yes",
+                "yes or no; motors often have none",
+            ),
+            answers::yes_no,
+        )?;
     let (line_default, device_default) = usual(kind);
-    let line_mm2 = s.ask(
-        with_default(&key("line"), "Line, mm² of copper", line_default, ""),
-        answers::size,
+    let line = s.ask(
+        with_default(
+            &key("line"),
+            "Line, mm²",
+            line_default,
+            "of copper, or 25 al of aluminium",
+        ),
+        answers::conductor,
     )?;
-    let cpc = cpc(s, &key("cpc"), kind, line_mm2)?;
+    let cpc = cpc(s, &key("cpc"), kind, line)?;
     let whole = if kind == CircuitKind::Ring {
         "Length of the whole loop, m"
     } else {
@@ -239,9 +256,9 @@ fn circuit(s: &mut Script<'_>, job: &Job, id: &str, no: CircuitNo) -> Result<Cir
             &key("rcd"),
             "RCD, rated residual current in mA",
             NONE,
-            "none when there is none",
+            "none when there is none; 100 s when it is time-delayed",
         ),
-        answers::number_or_none(1.0, 30_000.0),
+        answers::rcd,
     )?;
     let points = points(s, id, kind, length.m)?;
     let electronics = s.ask(
@@ -264,12 +281,21 @@ fn circuit(s: &mut Script<'_>, job: &Job, id: &str, no: CircuitNo) -> Result<Cir
             ),
             answers::yes_no,
         )?;
-    let line = copper(line_mm2);
+    let design_a = s.ask(
+        with_default(
+            &key("design"),
+            "Design current, A",
+            NONE,
+            "for the voltage drop",
+        ),
+        answers::number_or_none(0.01, 6300.0),
+    )?;
     Ok(Circuit {
         no,
         name,
         kind,
         three_phase,
+        without_neutral,
         cable: Cable {
             line,
             neutral: line,
@@ -280,15 +306,12 @@ fn circuit(s: &mut Script<'_>, job: &Job, id: &str, no: CircuitNo) -> Result<Cir
         device: Device {
             kind: device,
             rated_a,
-            rcd: rcd.map(|rated_ma| Rcd {
-                rated_ma,
-                delayed: false,
-            }),
+            rcd,
         },
         points,
         electronics,
         long_lead,
-        design_a: None,
+        design_a,
     })
 }
 
@@ -297,20 +320,25 @@ fn cpc(
     s: &mut Script<'_>,
     id: &str,
     kind: CircuitKind,
-    line_mm2: f64,
+    line: Conductor,
 ) -> Result<Option<Conductor>, Pause> {
     let low = extra_low(kind);
-    let default = if low {
-        NONE.to_string()
-    } else {
-        usual_cpc(line_mm2).to_string()
+    let default = match line {
+        _ if low => NONE.to_string(),
+        Conductor::Size {
+            mm2,
+            material: Material::Aluminium,
+            ..
+        } => format!("{mm2} al"),
+        Conductor::Size { mm2, .. } => usual_cpc(mm2).to_string(),
+        Conductor::Given { .. } => NONE.to_string(),
     };
     s.ask(
         with_default(
             id,
-            "Protective conductor, mm² of copper",
+            "Protective conductor, mm²",
             &default,
-            "for armour or conduit its milliohms per metre: 4.6 per m",
+            "of copper, or 25 al of aluminium; for armour or conduit its milliohms per metre: 4.6 per m",
         ),
         |answer| {
             if answers::is_none(answer) {
@@ -324,7 +352,7 @@ fn cpc(
                 return answers::number(0.0001, 10_000.0)(figure.trim())
                     .map(|milliohm_per_m| Some(Conductor::Given { milliohm_per_m }));
             }
-            answers::size(answer).map(|mm2| Some(copper(mm2)))
+            answers::conductor(answer).map(Some)
         },
     )
 }

@@ -3,8 +3,8 @@
 //! Promises: it is a pure function of the answers, so that an interview can be broken off, taken
 //! up again and stepped back at any question; an answer that cannot be right is refused with the
 //! reason; a finished interview gives a job whose file loads without a mistake. It leaves out
-//! prompting, history and files (the command), and what few jobs need (several electrodes' data,
-//! instrument accuracy, names of places): those are added to the file by hand.
+//! prompting, history and files (the command), and what few jobs need (pronunciations of names,
+//! conductor classes, several instruments): those are added to the file by hand.
 
 mod answers;
 mod circuits;

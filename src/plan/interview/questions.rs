@@ -4,15 +4,13 @@
 //! are shown before they are taken.
 
 use crate::domain::{
-    plan::{
-        Bond, Conductor, Earthing, Instrument, Job, Length, LengthBasis, Material, Rules, Run,
-        Supply,
-    },
+    place::BoardId,
+    plan::{Bond, Earthing, Instrument, Job, Length, LengthBasis, PlaceName, Rules, Run, Supply},
     words::Worded,
 };
 
 use super::{
-    super::{cable::usual_class, head::usual_instrument},
+    super::{board::feed_of, head::usual_instrument},
     Pause, Question, Script, answers,
     answers::{DONE, NONE},
     circuits,
@@ -119,6 +117,7 @@ pub(super) fn job(s: &mut Script<'_>) -> Result<Job, Pause> {
         place_names: Vec::new(),
     };
     circuits::boards(s, &mut job)?;
+    job.place_names = place_names(s, &job)?;
     Ok(job)
 }
 
@@ -209,26 +208,23 @@ fn run(s: &mut Script<'_>, id: &str, what: &str, mm2: &str) -> Result<Option<Run
     let mm2 = s.ask(
         with_default(
             &format!("{id}.mm2"),
-            &format!("{what}, mm² of copper"),
+            &format!("{what}, mm²"),
             mm2,
-            "none when unknown",
+            "of copper, or 25 al of aluminium; none when unknown",
         ),
         |answer| {
             if answers::is_none(answer) {
                 Ok(None)
             } else {
-                answers::size(answer).map(Some)
+                answers::conductor(answer).map(Some)
             }
         },
     )?;
-    let Some(mm2) = mm2 else {
+    let Some(conductor) = mm2 else {
         return Ok(None);
     };
     let length = length(s, id, &format!("{what}, length in m"))?;
-    Ok(Some(Run {
-        conductor: copper(mm2),
-        length,
-    }))
+    Ok(Some(Run { conductor, length }))
 }
 
 /// A length and how it is known.
@@ -247,15 +243,6 @@ pub(super) fn length(s: &mut Script<'_>, id: &str, text: &str) -> Result<Length,
         answers::word,
     )?;
     Ok(Length { m, basis })
-}
-
-/// A copper conductor of the usual class.
-pub(super) fn copper(mm2: f64) -> Conductor {
-    Conductor::Size {
-        mm2,
-        material: Material::Copper,
-        class: usual_class(mm2),
-    }
 }
 
 fn bonds(s: &mut Script<'_>) -> Result<Vec<Bond>, Pause> {
@@ -280,17 +267,19 @@ fn bonds(s: &mut Script<'_>) -> Result<Vec<Bond>, Pause> {
         if answers::is_done(&name) {
             return Ok(bonds);
         }
-        let mm2 = s.ask(
-            with_default(&format!("{id}.mm2"), "Its size, mm² of copper", "10", ""),
-            answers::size,
+        let conductor = s.ask(
+            with_default(
+                &format!("{id}.mm2"),
+                "Its size, mm²",
+                "10",
+                "of copper, or 25 al of aluminium",
+            ),
+            answers::conductor,
         )?;
         let length = length(s, &id, "Its length in m")?;
         bonds.push(Bond {
             name,
-            run: Run {
-                conductor: copper(mm2),
-                length,
-            },
+            run: Run { conductor, length },
         });
     }
 }
@@ -331,5 +320,68 @@ fn instruments(s: &mut Script<'_>) -> Result<Vec<Instrument>, Pause> {
             }
         },
     )?;
+    for (key, what, range) in [
+        ("continuity", "continuity", &mut instrument.continuity),
+        ("insulation", "insulation", &mut instrument.insulation),
+    ] {
+        let usual = format!("{} + {}", range.accuracy_percent, range.accuracy_digits);
+        (range.accuracy_percent, range.accuracy_digits) = s.ask(
+            with_default(
+                &format!("instrument.{key}"),
+                &format!("Its accuracy at {what}, % and digits"),
+                &usual,
+                "as its papers say: 3 + 2",
+            ),
+            answers::accuracy,
+        )?;
+    }
     Ok(vec![instrument])
+}
+
+/// Names of places that are called by voice: `boiler house = DB1/7`.
+fn place_names(s: &mut Script<'_>, job: &Job) -> Result<Vec<PlaceName>, Pause> {
+    s.ask(
+        with_default(
+            "places",
+            "Your own names of places, to call them by voice",
+            NONE,
+            "boiler house = DB1/7, yard = DB2; commas between",
+        ),
+        |answer| {
+            let mut names: Vec<PlaceName> = Vec::new();
+            for item in answers::texts(answer)? {
+                let (name, called) = item
+                    .split_once('=')
+                    .ok_or("write name and place with an equals sign: boiler house = DB1/7")?;
+                let name = name.trim().to_lowercase();
+                let plain = |c: char| c.is_alphabetic() || matches!(c, ' ' | '\'' | '-');
+                if name.is_empty() || !name.chars().all(plain) {
+                    return Err(format!("`{name}` cannot be said: use words of letters"));
+                }
+                if names.iter().any(|n| n.name == name) {
+                    return Err(format!("two places are called `{name}`"));
+                }
+                let called = called.trim().to_uppercase();
+                let (board, circuit) = match feed_of(&called) {
+                    Some((board, no)) => (Some(board), Some(no)),
+                    None => (BoardId::new(&called).ok(), None),
+                };
+                let known = match (&board, circuit) {
+                    (Some(board), Some(no)) => job.circuit(board, no).is_some(),
+                    (Some(board), None) => job.board(board).is_some(),
+                    _ => false,
+                };
+                if !known {
+                    return Err(format!("`{called}` is no board or circuit of this job"));
+                }
+                names.push(PlaceName {
+                    name,
+                    say: Vec::new(),
+                    board,
+                    circuit,
+                });
+            }
+            Ok(names)
+        },
+    )
 }

@@ -56,6 +56,9 @@ impl Default for Settings {
 pub enum Cut {
     /// Somebody began to speak.
     Began,
+    /// A pause that may be the end of an utterance: here it is as it would be. When the pause goes
+    /// on, the same sound comes as [`Cut::Ended`].
+    Likely(Vec<f32>, usize),
     /// An utterance is over; here it is, with the number of its loud frames (see [`loud`]).
     Ended(Vec<f32>, usize),
     /// What had begun was too short to be speech.
@@ -196,7 +199,13 @@ impl Activity {
                 }
                 let over =
                     speaking.since_voice >= self.settings.pause || speaking.frames >= LONGEST;
-                if over { self.end() } else { None }
+                if over {
+                    return self.end();
+                }
+                // From here on only silence is added, and cut off again at the end.
+                let likely = speaking.since_voice == self.settings.after
+                    && speaking.voiced >= self.settings.least;
+                likely.then(|| Cut::Likely(speaking.sound.clone(), loud(&speaking.levels)))
             }
         }
     }
@@ -350,5 +359,34 @@ mod tests {
         }
         pieces.extend(activity.finish());
         assert_eq!(pieces, whole);
+    }
+
+    #[test]
+    fn a_pause_gives_ahead_exactly_what_its_end_gives() {
+        // Speech, a pause long enough for a guess and no more, speech, a real end.
+        let cuts = cuts(&sound(&[
+            (-70.0, 150),
+            (-20.0, 40),
+            (-70.0, 40),
+            (-20.0, 30),
+            (-70.0, 90),
+        ]));
+        let likely: Vec<&Vec<f32>> = cuts
+            .iter()
+            .filter_map(|cut| match cut {
+                Cut::Likely(sound, _) => Some(sound),
+                _ => None,
+            })
+            .collect();
+        let ended: Vec<&Vec<f32>> = cuts
+            .iter()
+            .filter_map(|cut| match cut {
+                Cut::Ended(sound, _) => Some(sound),
+                _ => None,
+            })
+            .collect();
+        assert_eq!((likely.len(), ended.len()), (2, 1));
+        assert_eq!(likely[1], ended[0]);
+        assert!(likely[0].len() < likely[1].len());
     }
 }

@@ -24,6 +24,9 @@ pub enum FrontEvent {
     Began,
     /// What had begun was nothing.
     Dropped,
+    /// A pause that may be the end: what the utterance is if it is. Whoever has time may begin to
+    /// recognise it.
+    Likely(Utterance),
     /// An utterance, ready for the recogniser.
     Utterance(Utterance),
 }
@@ -148,6 +151,15 @@ impl Front {
         }
     }
 
+    /// The one utterance is over now, without waiting for the pause.
+    pub fn enough(&mut self, events: &mut Vec<FrontEvent>) {
+        if matches!(self.listening, Listening::Once) {
+            self.listening = Listening::Idle;
+            let steps = self.steps;
+            events.extend(self.activity.finish().map(|cut| event(cut, steps)));
+        }
+    }
+
     /// The key went down (only with hold-to-talk).
     pub fn press(&mut self, events: &mut Vec<FrontEvent>) {
         if matches!(self.listening, Listening::Idle) {
@@ -257,6 +269,7 @@ fn event(cut: Cut, steps: Steps) -> FrontEvent {
     match cut {
         Cut::Began => FrontEvent::Began,
         Cut::Dropped => FrontEvent::Dropped,
+        Cut::Likely(sound, loud) => FrontEvent::Likely(Utterance::of(&sound, loud, steps)),
         Cut::Ended(sound, loud) => FrontEvent::Utterance(Utterance::of(&sound, loud, steps)),
     }
 }
