@@ -318,4 +318,8 @@ fn main() {
     measure(&hearing, true, rounds);
     measure(&hearing, false, rounds);
     idle(&hearing);
+    let status = std::fs::read_to_string("/proc/self/status").unwrap_or_default();
+    for line in status.lines().filter(|l| l.starts_with("VmHWM")) {
+        println!("peak memory: {}", line.trim_start_matches("VmHWM:").trim());
+    }
 }

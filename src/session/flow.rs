@@ -210,7 +210,7 @@ impl State {
             return Some(self.hold(board, *circuit));
         }
         // At the end every work is asked for again, whatever was said about it before.
-        if let Some(work) = self.standing.works_in.first() {
+        if let Some(work) = self.standing.works_in.last() {
             return Some(Prompt::TakeOut(work.clone()));
         }
         self.job()

@@ -151,7 +151,7 @@ impl State {
     }
 
     /// What must be undone before going on to `next`: charge first, then works that would falsify
-    /// it, then works nobody needs any more.
+    /// it, then works nobody needs any more; of each the one that went in last.
     fn leave(&self, next: &Target) -> Option<Prompt> {
         let same = |board: &BoardId, circuit: CircuitNo| {
             next.board.as_ref() == Some(board) && next.circuit == Some(circuit)
@@ -173,11 +173,12 @@ impl State {
                     && !self.left_in.contains(work)
                     && !self.still_needed(work, next.test.stage())
             };
-            self.standing.works_in.iter().find(left).cloned()
+            self.standing.works_in.iter().rev().find(left).cloned()
         };
+        // The newest first: a cross-link comes out before the legs go back in.
         in_the_way
             .into_iter()
-            .next()
+            .next_back()
             .or_else(idle)
             .map(Prompt::TakeOut)
     }

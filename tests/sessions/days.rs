@@ -72,7 +72,28 @@ say: zero point seven two
 say: affirm",
     );
     bench.reach_reading();
-    bench.script("*3");
+    bench.script("*3\n-");
+    // The open end was found and made good: the two ends it may have upset are done again first.
+    for end in ["say: ring neutral", "say: ring line"] {
+        bench.reach_reading();
+        bench.script(end);
+        bench.reach_reading();
+        bench.script("0.44\n\n");
+    }
+    // Line to neutral, then line to earth; point 3 is the spur and reads higher.
+    for reading in [
+        "0.22", "0.22", "0.31", "0.22", "0.28", "0.29", "0.41", "0.28",
+    ] {
+        bench.reach_reading();
+        bench.script(&format!("{reading}\n\n"));
+    }
+    for reading in ["+299", "+299", ""] {
+        bench.reach_reading();
+        bench.script(&format!("{reading}\n\n"));
+    }
+    bench.reach_reading();
+    bench.script("\n");
+    assert!(bench.quit, "{}", bench.text);
     insta::assert_snapshot!("ring", bench.text);
 }
 
