@@ -159,12 +159,9 @@ fn load() -> String {
 fn ticks() -> u64 {
     let stat = std::fs::read_to_string("/proc/self/stat").unwrap_or_default();
     let after = stat.rsplit_once(')').map_or("", |(_, rest)| rest);
-    let fields: Vec<u64> = after
-        .split_whitespace()
-        .filter_map(|f| f.parse().ok())
-        .collect();
-    // The state is a letter and falls out: utime and stime are then the 11th and 12th.
-    fields.get(10).unwrap_or(&0) + fields.get(11).unwrap_or(&0)
+    // After the name come the state and ten more; then user and system time.
+    let fields = after.split_whitespace().skip(11).take(2);
+    fields.filter_map(|f| f.parse::<u64>().ok()).sum()
 }
 
 fn measure(hearing: &Arc<Hearing>, by_key: bool, rounds: usize) {

@@ -295,7 +295,7 @@ impl Watched {
                 };
                 let kept = format!("{} = {text}", reading.target);
                 assert!(self.affirmed.contains(&kept), "{kept} was never affirmed");
-                if reading.verdict.questioned() {
+                if reading.verdict.questioned() || !reading.findings.is_empty() {
                     assert!(
                         reading.kept_as_found.is_some(),
                         "{kept}: kept without a reason"

@@ -190,10 +190,10 @@ impl Tester {
                 }
                 _ => Meaning::Reading(self.alike(reading)),
             },
-            Meaning::Reply(Reply::Affirm) if self.ear.flips && self.dice.percent(25) => {
+            Meaning::Reply(Reply::Affirm) if self.ear.flips && self.dice.percent(60) => {
                 Meaning::Reply(Reply::Negative)
             }
-            Meaning::Reply(Reply::Negative) if self.ear.flips && self.dice.percent(25) => {
+            Meaning::Reply(Reply::Negative) if self.ear.flips && self.dice.percent(60) => {
                 Meaning::Reply(Reply::Affirm)
             }
             _ => Meaning::Control(self.any_command()),
