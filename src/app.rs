@@ -160,3 +160,62 @@ pub fn left_long(entries: &[Entry], now: crate::domain::moment::Moment) -> bool 
         !(0..=LONG_S).contains(&since)
     })
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Writes down what it is told.
+    #[derive(Default)]
+    struct Told(Vec<String>);
+
+    impl Voice for Told {
+        fn say(&mut self, text: &str) {
+            self.0.push(text.into());
+        }
+        fn tone(&mut self, tone: Tone) {
+            self.0.push(format!("{tone:?}"));
+        }
+    }
+
+    struct Nothing;
+
+    impl Events for Nothing {
+        fn next(&mut self) -> Option<Event> {
+            None
+        }
+    }
+    impl Show for Nothing {
+        fn event(&mut self, _event: &Event) {}
+        fn state(&mut self, _state: &State, _event: &Event) {}
+    }
+    impl Ledger for Nothing {
+        fn keep(&mut self, _record: Record) -> Result<EntryNo, String> {
+            Ok(1)
+        }
+    }
+
+    #[test]
+    fn one_tone_a_step_sounds_and_saying_something_does_not_drop_it() {
+        let job = crate::plan::parse(crate::plan::EXAMPLE, "example").expect("a job");
+        let setup = Setup::new(job, "A. Tester", session::Settings::default());
+        let (state, _) = session::begin(setup, Standing::new());
+        let mut told = Told::default();
+        let mut edges = Edges {
+            events: &mut Nothing,
+            show: &mut Nothing,
+            ledger: &mut Nothing,
+            voice: &mut told,
+        };
+        edges.carry_out(
+            state,
+            vec![
+                Effect::Tone(Tone::Understood),
+                Effect::Tone(Tone::OutOfRange),
+                Effect::Say("zero decimal nine".into()),
+            ],
+        );
+        // A speaker drops what sounds when it is told to say something: the tone comes after.
+        assert_eq!(told.0, ["zero decimal nine", "OutOfRange"]);
+    }
+}

@@ -221,10 +221,16 @@ impl Session {
                 Ok(Some(events))
             }
             Err(why) => {
-                eprintln!("{why}");
+                self.tell(&why);
                 Ok(None)
             }
         }
+    }
+
+    /// A line for whoever reads the terminal afterwards, and on the first screen, which hides it.
+    fn tell(&mut self, why: &str) {
+        eprintln!("{why}");
+        self.setup.remark = why.to_owned();
     }
 
     fn work(
@@ -238,7 +244,7 @@ impl Session {
         let context = Rc::new(Cell::new(Context::All));
         let (mut sound, silent) = Sound::start(&self.setup.settings);
         if let Some(why) = silent {
-            eprintln!("{why}");
+            self.tell(&why);
         }
         let ear = self.ear(place, &mut sound)?;
         let mut voice = Listening {

@@ -40,6 +40,8 @@ pub struct Setup {
     /// The work was left long enough, or the clock is so doubtful, that isolation must be proved
     /// again before anything else.
     pub away: bool,
+    /// What stands on the first screen: why there is no voice, why there is no sound.
+    pub remark: String,
     /// The test at which the log breaks off, when a session is taken up again.
     pub resume_at: Option<Target>,
     /// Every test the job needs, in order.
@@ -66,6 +68,7 @@ impl Setup {
             voice: None,
             program: env!("CARGO_PKG_VERSION").into(),
             away: false,
+            remark: String::new(),
             resume_at: None,
             required,
             needed_by,
@@ -192,6 +195,7 @@ pub fn begin(setup: Setup, standing: Standing) -> (State, Vec<Effect>) {
         resumed: standing.last > 0,
         voice: setup.voice.clone().unwrap_or_else(|| "keypad only".into()),
     };
+    let notice = setup.remark.clone();
     let mut state = State {
         setup: Arc::new(setup),
         stack: vec![Prompt::Finish],
@@ -215,7 +219,7 @@ pub fn begin(setup: Setup, standing: Standing) -> (State, Vec<Effect>) {
         lost_ms: (0, 0),
         level: 0,
         now: 0,
-        notice: String::new(),
+        notice,
         heard: String::new(),
         spoken: String::new(),
         ending: false,
