@@ -22,7 +22,7 @@ import places
 from align import load
 from lexicon import DIGITS, TEENS, TENS
 from phones import CLASS_ID, NSN, SIL
-from voices import KEPT_OUT, KOKORO, TRAINING
+from voices import KEPT_OUT, KOKORO, KOKORO_JA, TRAINING
 
 NOISE_SETS = ("noise_esc10", "noise_opensfx")
 SHARE_TALK_AS_NSN = .65  # the rest of the talk keeps its phones, so that own words can be added later
@@ -47,15 +47,23 @@ def unit(x):
     return x / (np.sqrt((x ** 2).mean()) + 1e-9)
 
 
+def narrowed(x, how, r):
+    """The telephone's band."""
+    if how == "resampled":
+        return resample_poly(resample_poly(x, 1, 2), 2, 1)[:len(x)]
+    return sosfilt(butter(6, r.uniform(3300, 4000) / 8000, output="sos"), x)
+
+
 class Maker:
     def __init__(self, seed, utterances):
         self.r = np.random.default_rng(seed)
         train = [u for u in utterances if not u["dev"] and len(u["x"]) < LONGEST]
         self.human = [u for u in train if u["src"] != "synthetic"]
         self.human_phrase = [u for u in self.human if u["kind"] == "phrase"]
-        self.kokoro = [u for u in train if u["spk"] in KOKORO]
-        self.quick = [u for u in train if u["spk"] in TRAINING and u["spk"] not in KOKORO]
-        if any(u["spk"] in KEPT_OUT for u in train):
+        voice = lambda u: u["spk"].split("-")[0]
+        self.kokoro = [u for u in train if voice(u) in KOKORO + KOKORO_JA]
+        self.quick = [u for u in train if voice(u) in TRAINING and voice(u) not in KOKORO + KOKORO_JA]
+        if any(voice(u) in KEPT_OUT for u in train):
             raise SystemExit("a voice kept out for tests is among the training material")
         self.noise = [z for z in (load(f) for f in noise_files(False)) if len(z) > 8000 and np.abs(z).max() > 1e-3]
         self.pieces = self._pieces(train)
@@ -143,14 +151,20 @@ class Maker:
             f = np.arange(len(spectrum)) / len(spectrum) * 8000
             g = np.interp(f, [0, 150, 500, 1000, 2000, 4000, 8000.], r.uniform(-7, 7, 7))
             x = np.fft.irfft(spectrum * 10 ** (g / 20), len(x))
+        # Narrow headsets and old recordings: "two" and "six" lose their hiss. The band is cut before or after the noise
+        # comes in, and the noise of a narrow channel has nothing above it either.
         k = r.random()
-        if k < .20:  # telephone band, as narrow headsets give it: "two" and "six" lose their hiss
-            n = len(x)
-            x = resample_poly(resample_poly(x, 1, 2), 2, 1)[:n]
-        elif k < .32:
-            x = sosfilt(butter(6, r.uniform(3300, 4000) / 8000, output="sos"), x)
+        narrow = "resampled" if k < .26 else "filtered" if k < .38 else None
+        late = r.random() < .7
+        if narrow and not late:
+            x = narrowed(x, narrow, r)
         elif k > .92:
             x = sosfilt(butter(4, r.uniform(200, 400) / 8000, "high", output="sos"), x)
+        if r.random() < .25:  # cut close, as a key pressed late or a trimmed recording gives it
+            c = s0 + int(r.uniform(-.03, .02) * 16000)
+            x[:max(0, c)] = 0
+            c = s1 + int(r.uniform(-.02, .04) * 16000)
+            x[max(0, c):] = 0
         x /= np.abs(x).max() + 1e-9
         if r.random() < .15:
             x = np.tanh(x * r.uniform(1.5, 6))
@@ -158,7 +172,14 @@ class Maker:
         x = x * 10 ** ((r.uniform(-32, -1) if r.random() < .6 else r.uniform(-14, -3)) / 20)
         if r.random() < .68:
             rms = np.sqrt((x[s0:s1] ** 2).mean()) + 1e-9
-            x = x + self.a_noise(len(x)) * rms * 10 ** (-r.uniform(0, 26) / 20)
+            x = x + self.a_noise(len(x)) * rms * 10 ** (-(r.uniform(0, 26) if r.random() < .6 else r.uniform(2, 13)) / 20)
+        if narrow and late:
+            x = narrowed(x, narrow, r)
+            if r.random() < .3:  # the eight bits of a telephone line, logarithmic
+                top = np.abs(x).max() + 1e-9
+                y = np.sign(x) * np.log1p(255 * np.abs(x / top)) / np.log(256)
+                y = np.round(y * 128) / 128
+                x = np.sign(y) * np.expm1(np.abs(y) * np.log(256)) / 255 * top
         x = x * 32767 + r.normal(size=len(x)) * np.exp(r.uniform(0, np.log(40)))
         m = features.mfcc(np.clip(np.round(x), -32768, 32767))
         t = len(m)
@@ -193,7 +214,7 @@ class Maker:
     def splice(self):
         r = self.r
         human = r.random() < .6
-        speakers = [k for k in self.pieces if (k not in TRAINING) == human] or list(self.pieces)
+        speakers = [k for k in self.pieces if (k.split("-")[0] not in TRAINING) == human] or list(self.pieces)
         v = self.pieces[speakers[r.integers(len(speakers))]]
         numbers = [p for p in v if p[0] in DIGITS + TEENS + TENS + ["oh", "nought", "point"]]
         if human and r.random() < .35:  # several people: digits of the crowd, whose own sets are small
@@ -233,9 +254,9 @@ class Maker:
         k, r = self.r.random(), self.r
         if k < .05:
             return self.noise_only()
-        if k < .28:
+        if k < .33:
             return self.splice()
-        pool = self.human if k < .58 or not self.kokoro else self.kokoro if k < .90 else self.quick
+        pool = self.human if k < .60 or not self.kokoro else self.kokoro if k < .93 else self.quick
         return self.item(pool[r.integers(len(pool))])
 
 

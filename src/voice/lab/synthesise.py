@@ -1,6 +1,7 @@
 """Stage: texts -> synthetic speech with a manifest (path, text, voice, talk or phrase).
 
   python synthesise.py kokoro SEED MINUTES     about real time on one core; stops after MINUTES of clock time
+  python synthesise.py accents SEED MINUTES    the same, said as people with other first languages say English
   python synthesise.py quick SEED COUNT        hibari and flite, COUNT utterances each, many times real time
 
 Promises: seeded texts; half of Kokoro's utterances use a blend of two training voices. The first COUNT texts
@@ -33,16 +34,19 @@ def main(kind, seed, amount):
         def said(text):
             return text.replace(" ", ", ") if r.random() < .08 else text + r.choice(["", ".", ".", "?"])
 
-        if kind == "kokoro":
-            texts, end, k = stream(f"kokoro{seed}", .14), time.time() + 60 * float(amount), 0
+        if kind in ("kokoro", "accents"):
+            texts, end, k = stream(f"{kind}{seed}", .14), time.time() + 60 * float(amount), 0
+            known = voices.KOKORO if kind == "kokoro" else voices.KOKORO + voices.KOKORO_JA
             while time.time() < end:
                 text, talk = next(texts)
-                a, b = r.sample(voices.KOKORO, 2)
+                a, b = r.sample(known, 2)
                 w = r.uniform(.25, .75)
                 mix = a if r.random() < .5 else [(a, w), (b, 1 - w)]
                 british = a[0] == "b" or r.random() < .35
-                x = voices.speak_kokoro(mix, said(text), r.uniform(.85, 1.4), british)
-                keep(x, f"k{seed}_{k:05d}", text, a, talk)
+                name = r.choice(sorted(voices.ACCENTS)) if kind == "accents" else None
+                accent = (lambda ps: voices.accented(ps, name, r)) if name else None
+                x = voices.speak_kokoro(mix, said(text), r.uniform(.85, 1.4), british, accent=accent)
+                keep(x, f"{kind[0]}{seed}_{k:05d}", text, f"{a}-{name}" if name else a, talk)
                 k += 1
         else:
             for v in ["hibari"] + voices.FLITE:

