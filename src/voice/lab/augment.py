@@ -154,7 +154,7 @@ class Maker:
         # Narrow headsets and old recordings: "two" and "six" lose their hiss. The band is cut before or after the noise
         # comes in, and the noise of a narrow channel has nothing above it either.
         k = r.random()
-        narrow = "resampled" if k < .26 else "filtered" if k < .38 else None
+        narrow = "resampled" if k < .20 else "filtered" if k < .30 else None
         late = r.random() < .7
         if narrow and not late:
             x = narrowed(x, narrow, r)
@@ -254,9 +254,9 @@ class Maker:
         k, r = self.r.random(), self.r
         if k < .05:
             return self.noise_only()
-        if k < .33:
+        if k < .28:
             return self.splice()
-        pool = self.human if k < .60 or not self.kokoro else self.kokoro if k < .93 else self.quick
+        pool = self.human if k < .58 or not self.kokoro else self.kokoro if k < .90 else self.quick
         return self.item(pool[r.integers(len(pool))])
 
 
