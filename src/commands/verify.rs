@@ -1,6 +1,6 @@
 //! `handsfull verify`: say what holds of a job's log, entry by entry.
 
-use std::{fmt::Write as _, path::PathBuf};
+use std::{collections::BTreeSet, fmt::Write as _, path::PathBuf};
 
 use clap::Args as ClapArgs;
 
@@ -106,7 +106,7 @@ fn said(out: &mut String, inspection: &Inspection) {
 /// Looks at every clip the log names; gives a line about them.
 fn clips(inspection: &Inspection, findings: &mut Vec<String>) -> String {
     let clips = Clips::new(inspection.places.clips(), Keeping::default());
-    let (mut there, mut gone) = (0, 0);
+    let (mut there, mut gone, mut named) = (0, 0, BTreeSet::new());
     for entry in &inspection.log.entries {
         let Record::Reading(reading) = &entry.record else {
             continue;
@@ -114,6 +114,7 @@ fn clips(inspection: &Inspection, findings: &mut Vec<String>) -> String {
         let (Some(file), Some(digest)) = (&reading.clip, &reading.clip_digest) else {
             continue;
         };
+        named.insert(file.as_str());
         match clips.holds(file, digest) {
             Ok(Some(true)) => there += 1,
             Ok(Some(false)) => findings.push(format!(
@@ -125,10 +126,32 @@ fn clips(inspection: &Inspection, findings: &mut Vec<String>) -> String {
             Err(e) => findings.push(format!("entry {}: {e}", entry.no)),
         }
     }
-    match (there, gone) {
-        (0, 0) => "no clips named".into(),
-        (there, 0) => format!("{there} clips there and unchanged"),
-        (there, gone) => format!("{there} clips there and unchanged, {gone} no longer there"),
+    let mut line = match there + gone {
+        0 => "no clips named".to_owned(),
+        _ => format!("{} there and unchanged", counted(there)),
+    };
+    if gone > 0 {
+        let _ = write!(line, ", {gone} no longer there");
+    }
+    match clips.others(&named) {
+        Ok((others, changed)) => {
+            if others > 0 {
+                let other = counted(others);
+                let _ = write!(line, "; {other} more of commands and refused hearings");
+            }
+            findings.extend(changed.iter().map(|file| {
+                format!("clip {file}, which no entry names, is not the one that was recorded")
+            }));
+        }
+        Err(e) => findings.push(e.to_string()),
+    }
+    line
+}
+
+fn counted(clips: usize) -> String {
+    match clips {
+        1 => "1 clip".into(),
+        n => format!("{n} clips"),
     }
 }
 

@@ -6,6 +6,7 @@
 //! It leaves out recording and playing.
 
 use std::{
+    collections::BTreeSet,
     fs::{self, DirBuilder},
     io::{self, Cursor},
     os::unix::fs::DirBuilderExt,
@@ -161,6 +162,54 @@ impl Clips {
         }
     }
 
+    /// How many clips are there beside those the log names (commands, hearings that were refused),
+    /// and which of them are not what their names say.
+    ///
+    /// # Errors
+    /// [`ClipError`] when the folder or a clip cannot be read.
+    pub fn others(&self, named: &BTreeSet<&str>) -> Result<(usize, Vec<String>), ClipError> {
+        let (mut count, mut changed) = (0, Vec::new());
+        for path in self.listed()? {
+            let file = path
+                .file_name()
+                .and_then(|n| n.to_str())
+                .unwrap_or_default();
+            if named.contains(file) {
+                continue;
+            }
+            let (_, bytes) = self.bytes(file)?;
+            let digest = blake3::hash(&bytes).to_hex();
+            if file.strip_suffix(".flac") == digest.as_str().get(..16) {
+                count += 1;
+            } else {
+                changed.push(file.to_owned());
+            }
+        }
+        Ok((count, changed))
+    }
+
+    /// Every clip in the folder, by name.
+    fn listed(&self) -> Result<Vec<PathBuf>, ClipError> {
+        let io = |source| ClipError::Io {
+            doing: "look through",
+            path: self.folder.clone(),
+            source,
+        };
+        let listing = match fs::read_dir(&self.folder) {
+            Err(e) if e.kind() == io::ErrorKind::NotFound => return Ok(Vec::new()),
+            listing => listing.map_err(io)?,
+        };
+        let mut clips = Vec::new();
+        for item in listing {
+            let path = item.map_err(io)?.path();
+            if path.extension().is_some_and(|e| e == "flac") {
+                clips.push(path);
+            }
+        }
+        clips.sort();
+        Ok(clips)
+    }
+
     fn bytes(&self, file: &str) -> Result<(PathBuf, Vec<u8>), ClipError> {
         // The name comes out of a log: it must not lead out of the folder.
         let plain = Path::new(file).file_name().and_then(|n| n.to_str()) == Some(file);
@@ -189,17 +238,10 @@ impl Clips {
             path: self.folder.clone(),
             source,
         };
-        let listing = match fs::read_dir(&self.folder) {
-            Err(e) if e.kind() == io::ErrorKind::NotFound => return Ok(0),
-            listing => listing.map_err(io)?,
-        };
         let mut clips = Vec::new();
-        for item in listing {
-            let item = item.map_err(io)?;
-            if item.path().extension().is_some_and(|e| e == "flac") {
-                let about = item.metadata().map_err(io)?;
-                clips.push((about.modified().map_err(io)?, about.len(), item.path()));
-            }
+        for path in self.listed()? {
+            let about = path.metadata().map_err(io)?;
+            clips.push((about.modified().map_err(io)?, about.len(), path));
         }
         clips.sort();
         let mut total: u64 = clips.iter().map(|(_, length, _)| length).sum();

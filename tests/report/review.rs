@@ -269,7 +269,7 @@ fn a_clip_that_was_changed_is_found_and_one_that_is_gone_is_only_said() {
     kept.clip_digest = Some(saved.digest);
     let no = bench.put(Record::Reading(Box::new(kept)));
     bench.close();
-    assert!(said(&bench, &["verify", "joinery.toml"]).contains("1 clips there and unchanged"));
+    assert!(said(&bench, &["verify", "joinery.toml"]).contains("1 clip there and unchanged"));
     let wav = bench.folder.path().join("out.wav");
     let (no, out) = (no.to_string(), wav.display().to_string());
     said(
@@ -288,6 +288,17 @@ fn a_clip_that_was_changed_is_found_and_one_that_is_gone_is_only_said() {
     fs::remove_file(&path).expect("there");
     let text = said(&bench, &["verify", "joinery.toml"]);
     assert!(text.contains("1 no longer there"), "{text}");
+
+    // What was refused is kept beside the log too, and is looked at by its name.
+    let refused_one = clips.save(&[5; 4000]).expect("saved").expect("kept");
+    let text = said(&bench, &["verify", "joinery.toml"]);
+    assert!(
+        text.contains("1 clip more of commands and refused hearings"),
+        "{text}"
+    );
+    fs::write(places.clips().join(&refused_one.file), b"other").expect("written");
+    let text = refused(&bench, &["verify", "joinery.toml"], 1);
+    assert!(text.contains("which no entry names"), "{text}");
 }
 
 #[test]
