@@ -18,7 +18,7 @@ use super::{
     act::How,
     effect::{Effect, Tone},
     prompt::{Choice, DeadStep, Entry, Prompt},
-    state::State,
+    state::{EarState, State},
     trade, utter,
 };
 
@@ -332,11 +332,16 @@ impl State {
 
     pub(super) fn talk(&mut self, out: &mut Vec<Effect>) {
         match self.ear {
-            super::state::EarState::None => self.refuse("Keypad only: there is no voice.", out),
-            super::state::EarState::Lost => self.refuse("The microphone is gone.", out),
-            _ => {
+            EarState::None => self.refuse("Keypad only: there is no voice.", out),
+            EarState::Lost => self.refuse("The microphone is gone.", out),
+            EarState::Listening => self.note("It listens all the time: speak."),
+            // The second press says that it was said.
+            EarState::Asked | EarState::Speech => out.push(Effect::Talk),
+            EarState::OnKey => {
+                self.ear = EarState::Asked;
                 out.push(Effect::Talk);
                 out.push(Effect::Tone(Tone::Listening));
+                out.push(Effect::Show);
             }
         }
     }

@@ -178,6 +178,7 @@ fn status(state: &State) -> String {
         EarState::Lost => "MIC GONE, keys only".to_owned(),
         _ if state.stack.iter().any(|p| matches!(p, Prompt::Standby)) => "standby".to_owned(),
         _ if state.deaf => "mic waits: tool speaks".to_owned(),
+        EarState::Asked => format!("mic {} SPEAK", meter(state.level)),
         EarState::OnKey => format!("mic {} on key", meter(state.level)),
         EarState::Listening => format!("mic {} open", meter(state.level)),
         EarState::Speech => format!("mic {} HEARING", meter(state.level)),

@@ -97,6 +97,8 @@ pub enum EarState {
     Listening,
     /// A key opens it for one utterance.
     OnKey,
+    /// The key was pressed: it waits for speech.
+    Asked,
     /// Somebody speaks.
     Speech,
     /// The microphone went away.
@@ -303,6 +305,9 @@ impl State {
                 self.key(key, out);
             }
             Event::Heard(heard) => {
+                if self.ear == EarState::Asked {
+                    self.ear = self.rest();
+                }
                 if !matches!(self.top(), Prompt::Standby) {
                     self.notice.clear();
                 }
@@ -368,7 +373,7 @@ impl State {
 
     fn speaking(&mut self, on: bool, out: &mut Vec<Effect>) {
         let next = match (self.ear, on) {
-            (EarState::Listening | EarState::OnKey, true) => EarState::Speech,
+            (EarState::Listening | EarState::OnKey | EarState::Asked, true) => EarState::Speech,
             (EarState::Speech, false) => self.rest(),
             (same, _) => same,
         };
@@ -416,6 +421,9 @@ impl State {
     /// What began like speech was none. Told where it was asked for by a key; with the microphone
     /// open only where the line is free, for every knock begins like speech.
     fn no_speech(&mut self, out: &mut Vec<Effect>) {
+        if self.ear == EarState::Asked {
+            self.ear = self.rest();
+        }
         if self.setup.settings.hold_to_talk {
             self.refuse("No words heard. Press and say it again.", out);
         } else if self.notice.is_empty() && !matches!(self.top(), Prompt::Standby) {

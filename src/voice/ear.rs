@@ -343,7 +343,16 @@ impl Listener {
                 Order::Press => front.press(&mut events),
                 Order::Release => front.release(&mut events),
                 // A second press ends what the first began.
-                Order::Once if self.asked && front.speaking() => front.enough(&mut events),
+                Order::Once if self.asked => {
+                    let before = events.len();
+                    front.enough(&mut events);
+                    let said = |e: &FrontEvent| matches!(e, FrontEvent::Utterance(_));
+                    if !events[before..].iter().any(said) {
+                        self.asked = false;
+                        events.truncate(before);
+                        events.push(FrontEvent::Dropped);
+                    }
+                }
                 Order::Once => {
                     front.once();
                     self.asked = self.hold;
@@ -387,6 +396,8 @@ impl Listener {
             }
             // Told by `Speaking`.
             FrontEvent::Began => return Ok(()),
+            // A knock before the words: it goes on listening.
+            FrontEvent::Dropped if self.asked => return Ok(()),
             FrontEvent::Dropped => VoiceEvent::NoSpeech,
             FrontEvent::Utterance(utterance) => {
                 self.asked = false;

@@ -195,10 +195,13 @@ fn put(said: &mut String, line: &str) {
 
 /// The values said to be kept, with their entries.
 fn kept(said: &str) -> Vec<(u64, String)> {
-    said.split("Kept: ")
+    // "Kept: 0.59 Ω (entry 3)", or with its reason "Kept as found: 0.91 Ω, why (entry 4)".
+    said.replace("Kept as found: ", "Kept: ")
+        .split("Kept: ")
         .skip(1)
         .filter_map(|rest| {
             let (value, rest) = rest.split_once(" (entry ")?;
+            let value = value.split(", ").next()?;
             let (no, _) = rest.split_once(')')?;
             Some((no.parse().ok()?, value.to_owned()))
         })

@@ -302,3 +302,32 @@ fn after_a_long_sleep_isolation_is_proved_again_and_nothing_unaffirmed_is_kept()
     bench.script("0.23\n\n");
     shows(&bench, "R1+R2 pt 2");
 }
+
+#[test]
+fn a_pressed_key_shows_that_it_listens_and_pressed_again_that_it_was_said() {
+    let mut setup = handsfull::session::Setup::new(
+        job(include_str!("jobs/radial.toml")),
+        "A. Tester",
+        handsfull::session::Settings {
+            hold_to_talk: true,
+            ..handsfull::session::Settings::default()
+        },
+    );
+    setup.voice = Some("test voice".into());
+    let mut bench = Bench::with(setup, handsfull::domain::standing::Standing::new());
+    bench.reach_reading();
+    shows(&bench, "on key");
+    bench.take(Event::Key(Key::Talk));
+    shows(&bench, "SPEAK");
+    bench.take(Event::Speaking(true));
+    shows(&bench, "HEARING");
+    bench.take(Event::Key(Key::Talk));
+    bench.take(Event::Speaking(false));
+    bench.say("zero point zero two");
+    shows(&bench, "0.02 Ω, right?");
+    shows(&bench, "on key");
+    bench.take(Event::Key(Key::Talk));
+    bench.take(Event::NoSpeech);
+    shows(&bench, "No words heard. Press and say it again.");
+    shows(&bench, "on key");
+}
