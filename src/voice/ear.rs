@@ -94,6 +94,7 @@ impl Ear {
             paused: false,
             muted_until: None,
             guess: None,
+            guessing: Arc::default(),
         };
         let thread = thread::Builder::new()
             .name("ear".into())
@@ -166,6 +167,8 @@ struct Listener {
     paused: bool,
     muted_until: Option<Instant>,
     guess: Option<Guess>,
+    /// One more holder a guess that runs.
+    guessing: Arc<()>,
 }
 
 /// An utterance that is being recognised while the pause after it is waited for.
@@ -364,21 +367,20 @@ impl Listener {
     }
 
     /// Recognises ahead, on a thread of its own: the same sound in the same context gives the same
-    /// answer, so nothing but time is gained or lost. One at a time.
+    /// answer, so nothing but time is gained or lost. Two at the most: one that speech overtook may
+    /// still be running on a slow machine.
     fn begin_guess(&mut self, utterance: Utterance) {
-        let running = self
-            .guess
-            .as_ref()
-            .is_some_and(|g| matches!(g.answer.try_recv(), Err(TryRecvError::Empty)));
-        if running {
+        if Arc::strong_count(&self.guessing) > 2 {
             return;
         }
+        let running = Arc::clone(&self.guessing);
         let (send, answer) = channel();
         let (hearing, context) = (Arc::clone(&self.hearing), self.context);
         let samples = utterance.samples.clone();
         let begun = thread::Builder::new().name("guess".into()).spawn(move || {
             // Nobody waits for it any more when speech went on.
             let _unwanted = send.send(hearing.fit(context, &utterance));
+            drop(running);
         });
         self.guess = begun.is_ok().then_some(Guess {
             context,
