@@ -25,7 +25,7 @@ use crate::{
 };
 
 /// Raised whenever the bytes built from the same inputs change.
-const BUILDER: &str = "handsfull voice 2";
+const BUILDER: &str = "handsfull voice 3";
 
 /// The context in which any sound may follow any other: the measure of how well an utterance fits
 /// what may be said.
@@ -207,10 +207,14 @@ impl Recipe {
     }
 }
 
+/// Settings of every context, after those of the base; in Kaldi's option files the last line wins.
+///
 /// Utterances come whole, so the network may be given half a second at a time: the same result to
 /// the last digit, an eighth less work than in pieces of a fifth of a second. Longer pieces save
 /// more, but a model then takes twice as long to open, and contexts are opened as they are needed.
-const WHOLE: &str = "--frames-per-chunk=51\n";
+/// The lattice is kept small: on 87 phrases at +10 dB the likeliest words were the same with a beam
+/// of 6, for a third more work, and for four times the work on eight seconds of music.
+const WHOLE: &str = "--frames-per-chunk=51\n--max-active=2000\n--lattice-beam=4.0\n";
 
 /// Settings of the decoder where any sound may follow any other: only the best path matters, and a
 /// lattice of all the others would not fit into memory.
