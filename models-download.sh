@@ -89,6 +89,25 @@ wanted() {
     if [ "$tests" = yes ] && ! has_venv; then echo python3-venv; fi
 }
 
+# Reads guessed names of places aloud (plan check --say). Nothing else needs it, so that it cannot be
+# had is told and is no failure.
+install_synthesiser() {
+    local as=()
+    if have espeak-ng; then
+        say "espeak-ng: there, skipped"
+        return 0
+    fi
+    if [ "$(id -u)" -ne 0 ]; then as=(sudo -n); fi
+    if have apt-get && { [ "$(id -u)" -eq 0 ] || { have sudo && sudo -n true 2>/dev/null; }; } &&
+        "${as[@]}" apt-get update -q &&
+        "${as[@]}" env DEBIAN_FRONTEND=noninteractive \
+            apt-get install -y -q --no-install-recommends espeak-ng; then
+        say "espeak-ng: installed"
+    else
+        say "espeak-ng: not there; names of places are not read aloud, tests of that will skip"
+    fi
+}
+
 install_system() {
     local list as=()
     list=$(wanted | tr '\n' ' ')
@@ -243,6 +262,7 @@ fetch_prompts() {
 }
 
 [ "$system" = yes ] && install_system
+[ "$system" = yes ] && install_synthesiser
 fetch_libvosk
 notices
 [ "$tests" = yes ] && fetch_prompts

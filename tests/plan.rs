@@ -1,6 +1,8 @@
 //! The job file and the order of its tests, from the outside: fixtures, one broken file an error,
 //! sequences as whole lists, works, reminders, the interview, the command.
 
+#[path = "plan/aloud.rs"]
+mod aloud;
 #[path = "plan/cli.rs"]
 mod cli;
 #[path = "plan/errors.rs"]

@@ -71,25 +71,14 @@ fn add(lexicon: &mut Lexicon, name: &PlaceName) -> Result<(), String> {
 /// # Errors
 /// As [`lexicon`].
 pub(super) fn told(name: &PlaceName) -> Result<String, Failure> {
-    let before = lexicon()?;
-    let mut after = lexicon()?;
-    let trouble = add(&mut after, name).err();
-    let given = trouble.is_none() && !name.say.is_empty();
-    let words = spelling::words(&name.name);
-    let sounds = |word: &String| {
-        let ways = after.get(word);
-        // What was given stands after what the word had.
-        let way = if given { ways.last() } else { ways.first() };
-        way.cloned().unwrap_or_default()
-    };
-    let ways: Vec<Pronunciation> = words.iter().map(sounds).collect();
+    let Sounds {
+        ways,
+        guessed,
+        given,
+        trouble,
+    } = sounds(name)?;
     let said: Vec<String> = ways.iter().map(plainly).collect();
     let phones: Vec<String> = ways.iter().map(spelled).collect();
-    let guessed: Vec<&str> = words
-        .iter()
-        .filter(|word| !given && before.get(word).is_empty())
-        .map(String::as_str)
-        .collect();
     let mut line = format!(
         "Place \"{}\" is listened for as \"{}\" ({})",
         name.name,
@@ -110,6 +99,49 @@ pub(super) fn told(name: &PlaceName) -> Result<String, Failure> {
         line.push_str(&format!(" {trouble}."));
     }
     Ok(line)
+}
+
+/// The sounds of a name's words in which something was guessed or given, so worth hearing.
+///
+/// # Errors
+/// As [`lexicon`].
+pub(super) fn unsure(name: &PlaceName) -> Result<Option<Vec<Pronunciation>>, Failure> {
+    let sounds = sounds(name)?;
+    Ok((sounds.given || !sounds.guessed.is_empty()).then_some(sounds.ways))
+}
+
+/// How a name's words sound, and why.
+struct Sounds {
+    ways: Vec<Pronunciation>,
+    guessed: Vec<String>,
+    given: bool,
+    trouble: Option<String>,
+}
+
+fn sounds(name: &PlaceName) -> Result<Sounds, Failure> {
+    let before = lexicon()?;
+    let mut after = lexicon()?;
+    let trouble = add(&mut after, name).err();
+    let given = trouble.is_none() && !name.say.is_empty();
+    let words = spelling::words(&name.name);
+    let sounds = |word: &String| {
+        let ways = after.get(word);
+        // What was given stands after what the word had.
+        let way = if given { ways.last() } else { ways.first() };
+        way.cloned().unwrap_or_default()
+    };
+    let ways: Vec<Pronunciation> = words.iter().map(sounds).collect();
+    let guessed: Vec<String> = words
+        .iter()
+        .filter(|word| !given && before.get(word).is_empty())
+        .cloned()
+        .collect();
+    Ok(Sounds {
+        ways,
+        guessed,
+        given,
+        trouble,
+    })
 }
 
 fn spelled(way: &Pronunciation) -> String {

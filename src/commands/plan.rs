@@ -5,6 +5,7 @@
 mod check;
 mod lay;
 mod new;
+mod say;
 mod show;
 
 use std::path::PathBuf;
@@ -39,6 +40,12 @@ enum What {
         /// Columns; the terminal's when left out
         #[arg(long, value_name = "COLUMNS")]
         width: Option<usize>,
+        /// Also speak the places whose sounds were guessed or given (needs espeak-ng)
+        #[arg(long)]
+        say: bool,
+        /// Write what is spoken to a new WAV file instead
+        #[arg(long, value_name = "FILE", requires = "say")]
+        to: Option<PathBuf>,
     },
     /// Show boards, circuits, their tests in order and what each should read
     Show {
@@ -62,7 +69,19 @@ enum What {
 pub fn run(args: &Args) -> Result<(), Failure> {
     match &args.what {
         What::New { file } => new::run(file),
-        What::Check { file, width } => check::run(file, lay::width(*width)),
+        What::Check {
+            file,
+            width,
+            say,
+            to,
+        } => {
+            let width = lay::width(*width);
+            let job = check::run(file, width)?;
+            if *say {
+                say::run(&job, to.as_deref(), width)?;
+            }
+            Ok(())
+        }
         What::Show {
             file,
             circuit,

@@ -5,6 +5,7 @@
 //! `vosk_link` finds the library. It leaves out what the words mean and what is done with them.
 
 pub mod adopt;
+pub mod aloud;
 pub mod base;
 pub mod build;
 pub mod ear;

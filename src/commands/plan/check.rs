@@ -10,8 +10,8 @@ use crate::domain::{
     words::Worded,
 };
 
-/// Runs the check.
-pub(super) fn run(file: &Path, width: usize) -> Result<(), Failure> {
+/// Runs the check; gives the job that was checked.
+pub(super) fn run(file: &Path, width: usize) -> Result<Job, Failure> {
     let loaded = read(file)?;
     let mut out = lay::wrapped(&summary(&loaded.job), 0, width);
     for name in &loaded.job.place_names {
@@ -21,7 +21,7 @@ pub(super) fn run(file: &Path, width: usize) -> Result<(), Failure> {
         out.push_str(&lay::wrapped(&format!("Note: {}.", notice.text), 0, width));
     }
     lay::print(&out);
-    Ok(())
+    Ok(loaded.job)
 }
 
 /// What a job holds, in one paragraph. It says nothing about the installation.
