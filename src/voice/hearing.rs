@@ -36,7 +36,7 @@ pub struct Limits {
 impl Default for Limits {
     fn default() -> Self {
         Self {
-            open: 2.85,
+            open: 3.3,
             held: 1.95,
         }
     }
